@@ -1,0 +1,109 @@
+"""``fluidev resist``: the readings of a case, each with its error and its ohmic value."""
+
+from __future__ import annotations
+
+import argparse
+import json
+import math
+from collections.abc import Mapping
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+from fluidev import __version__
+from fluidev.cli.files import check_writable, write_whole
+from fluidev.cli.options import Command, load_case
+from fluidev.cli.text_table import aligned
+
+if TYPE_CHECKING:
+    from fluidev.flow.run import Flow
+
+
+def arguments(parser: argparse.ArgumentParser) -> None:
+    """Add the arguments of the command."""
+    parser.add_argument(
+        "--json",
+        metavar="FILE",
+        help="write the results as JSON (to FILE, within the folder of --out if that is given; "
+        "'-' prints one JSON object in place of the table)",
+    )
+
+
+def run(given: argparse.Namespace) -> int:
+    """Solve the case and print its readings; exit status 0."""
+    from fluidev.progress import progress
+
+    case = load_case(given)
+    target = None if given.json in (None, "-") else Path(given.out or "", given.json)
+    if target is not None:
+        check_writable("--json", target)
+    with progress("solving"):
+        from fluidev.api import solve
+
+        flow = solve(case)
+        results = results_of(flow)
+    if given.json is not None:
+        text = json.dumps(results, ensure_ascii=False, allow_nan=False, indent=1) + "\n"
+    if target is not None:
+        write_whole("--json", target, text)
+    print(text if given.json == "-" else table_of(flow), end="" if given.json == "-" else "\n")
+    return 0
+
+
+def results_of(flow: Flow) -> dict[str, Any]:
+    """The results of a flow as JSON has them: SI values, null for what is not known or infinite."""
+    return {
+        "contacts": list(flow.contacts),
+        "conductance_siemens": [[_finite(g) for g in row] for row in flow.conductance],
+        "readings": [
+            {
+                "name": reading.name,
+                "current": list(reading.current),
+                "voltage": list(reading.voltage),
+                "resistance_ohm": _finite(reading.resistance),
+                "error_ohm": _finite(reading.error),
+                "ohmic_ohm": _finite(reading.ohmic),
+            }
+            for reading in flow.readings
+        ],
+        "fluid": _finite_values(flow.fluid.numbers),
+        "mesh": {"elements": int(flow.mesh.elements), "unknowns": int(flow.unknowns)},
+        "case_sha256": flow.case.text_sha256,
+        "version": __version__,
+    }
+
+
+def table_of(flow: Flow) -> str:
+    """The readings of a flow as a table, or the conductance matrix where there is none."""
+    from fluidev.case.display import with_error, with_prefix
+
+    if not flow.readings:
+        rows = [
+            [name, *(with_prefix(float(g), "S", 4) for g in row)]
+            for name, row in zip(flow.contacts, flow.conductance, strict=True)
+        ]
+        title = "current into the device at the contact of the row, for 1 V on that of the column"
+        return f"{title}\n{aligned(rows, ['', *flow.contacts])}"
+    rows = [
+        [
+            reading.name,
+            " → ".join(reading.current),
+            " − ".join(reading.voltage),
+            with_error(reading.resistance, reading.error, "Ω"),
+            "none" if reading.ohmic is None else with_prefix(reading.ohmic, "Ω", 4),
+        ]
+        for reading in flow.readings
+    ]
+    return aligned(rows, ["reading", "current", "voltage", "resistance", "ohmic"])
+
+
+def _finite(value: float | None) -> float | None:
+    return None if value is None or not math.isfinite(value) else float(value)
+
+
+def _finite_values(numbers: Mapping[str, float | None]) -> dict[str, float | None]:
+    return {key: _finite(value) for key, value in numbers.items()}
+
+
+RESIST = Command(
+    "resist", "solve a case and print its readings, each beside its ohmic value", arguments, run
+)
