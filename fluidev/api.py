@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
+import hashlib
 import os
 from collections.abc import Iterable
+from dataclasses import replace
 from typing import TYPE_CHECKING
 
 from fluidev.case.load import Case, parse_case, read_case
-from fluidev.fluid.kinds import fluid_of
-from fluidev.geometry.build import build_device
+from fluidev.flow.parts import parts_of
 
 if TYPE_CHECKING:
     from fluidev.flow.run import Flow
@@ -35,11 +36,15 @@ def solve(case: Case) -> Flow:
     Raises NumericsError where the numbers cannot be had.
     """
     from fluidev.flow.run import solve_case
+    from fluidev.readout.notebook import NotebookFlow
 
-    return solve_case(case)
+    return NotebookFlow(**vars(solve_case(case)))
 
 
 def _checked(case: Case) -> Case:
-    fluid_of(case)
-    build_device(case)
-    return case
+    density = parts_of(case).fluid.density
+    if density is None or not density.digests:
+        return case
+    # What the case reads from other files belongs to it as well.
+    whole = "".join((case.text_sha256, *density.digests))
+    return replace(case, text_sha256=hashlib.sha256(whole.encode()).hexdigest())

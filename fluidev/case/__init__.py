@@ -1,0 +1,1 @@
+"""The case file: read, checked, in SI units."""

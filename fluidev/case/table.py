@@ -112,9 +112,10 @@ def _case_error(
         return CaseError(key, value, str(problem["ctx"]["error"]), file)
     if kind == "literal_error":
         choices = [choice for choice in _choices(field) if isinstance(choice, str)]
-        if isinstance(problem["input"], str) and choices:
-            return CaseError(key, value, suggestion(problem["input"], choices), file)
-        return CaseError(key, value, f"expected {problem['ctx']['expected']}", file)
+        expected = f"expected {problem['ctx']['expected']}"
+        if isinstance(problem["input"], str) and (near := nearest(problem["input"], choices)):
+            expected += f"; did you mean {near!r}?"
+        return CaseError(key, value, expected, file)
     wanted = _WANTED.get(kind)
     if wanted is None:
         return CaseError(key, value, problem["msg"][:1].lower() + problem["msg"][1:], file)

@@ -20,11 +20,12 @@ _SPELLING = (
 )
 
 # What most cases are written with, by SI unit: pint takes longer to import than all else that
-# checking a case needs. Every entry is compared with pint in the tests.
+# checking a case needs. All but the gauss are compared with pint in the tests.
 _FAMILIAR = {
     "m": {"m": 1.0, "mm": 1e-3, "um": 1e-6, "µm": 1e-6, "nm": 1e-9},
     "1/m^2": {"/cm^2": 1e4, "cm^-2": 1e4, "1/cm^2": 1e4, "/m^2": 1.0, "m^-2": 1.0},
-    "T": {"T": 1.0, "mT": 1e-3},
+    # Gauss has a dimension of its own in pint, that of the Gaussian system.
+    "T": {"T": 1.0, "mT": 1e-3, "G": 1e-4, "kG": 0.1, "gauss": 1e-4},
     "kg": {"m_e": 9.1093837139e-31, "kg": 1.0},
     "m^2/s": {"m^2/s": 1.0, "cm^2/s": 1e-4},
     "s": {"s": 1.0, "ns": 1e-9, "ps": 1e-12, "fs": 1e-15},
@@ -94,9 +95,13 @@ def si_factor(text: str, si_unit: str) -> float | None:
     unit, wanted = unit_of(text), registry().parse_units(si_unit)
     if unit.dimensionality != wanted.dimensionality:
         return None
-    if unit == registry().parse_units("dimensionless") and unit != wanted:
-        return None  # a bare number is no angle, although angles have no dimension
+    if unit.dimensionless and _base(unit) != _base(wanted):
+        return None  # an angle has no dimension, and yet a bare number or a percentage is no angle
     return float(registry().Quantity(1.0, unit).to(wanted).magnitude)
+
+
+def _base(unit: Any) -> Any:
+    return registry().get_base_units(unit)[1]
 
 
 def in_kelvin(number: float, text: str) -> float:

@@ -35,6 +35,8 @@ class Written(str):
 
 def written(value: object, longest: int = 60) -> object:
     """The value as it should stand in a message: long ones cut short, true rather than True."""
+    if value is None:
+        return None
     plain = isinstance(value, (str, int, float)) and not isinstance(value, bool)
     if plain and len(str(value)) <= longest:
         return value

@@ -15,6 +15,7 @@ if TYPE_CHECKING:
     from fluidev.fluid import Fluid
     from fluidev.geometry.device import Device
     from fluidev.geometry.outline import Outline
+    from fluidev.readout.regime import Regime
 
 Section = tuple[str, list[list[str]]]
 
@@ -30,27 +31,31 @@ def run(given: argparse.Namespace) -> int:
     case = load_case(given)
     with progress("meshing"):
         from fluidev.cli.doubts import doubts
-        from fluidev.flow.run import layer_lengths
-        from fluidev.fluid import fluid_of
-        from fluidev.geometry.build import build_device
-        from fluidev.geometry.meshing import mesh_device
+        from fluidev.flow.meshes import mesh_of
+        from fluidev.flow.parts import parts_of
         from fluidev.geometry.outline import Outline
+        from fluidev.geometry.width import passage_width
+        from fluidev.readout.regime import regime_of
 
-        device, fluid = build_device(case), fluid_of(case)
+        parts = parts_of(case)
+        device, fluid = parts.device, parts.fluid
         outer, *holes = (tuple(stretch.curve for stretch in loop) for loop in device.loops)
         outline = Outline(outer, tuple(holes))
-        mesh = mesh_device(device, *layer_lengths(fluid.coefficients))
+        mesh = mesh_of(parts)
+        regime = regime_of(case)
     sections = [
         ("case", [[case.name, case.title]]),
         ("device", _shape(case, outline)),
         ("contacts", list(_contacts(case, device))),
         ("walls", list(_walls(device))),
         ("fluid", list(_fluid(fluid))),
+        ("regime", list(_regime(regime))),
+        ("verdict", [[f"{regime.verdict}: {regime.reason}"]]),
         ("readings", list(_readings(case))),
         ("mesh", [[f"{mesh.elements} elements"]]),
     ]
     print("\n".join(_printed(section) for section in sections if section[1]))
-    found = doubts(case, device, outline.size, _narrowest(device), fluid.numbers)
+    found = doubts(case, device, outline.size, passage_width(device), fluid.numbers)
     for doubt in found:
         print(f"doubtful  {doubt}")
     return 0
@@ -103,24 +108,41 @@ def _walls(device: Device) -> Iterator[list[str]]:
 
 
 def _fluid(fluid: Fluid) -> Iterator[list[str]]:
-    from fluidev.case.display import FLUID, known
+    from fluidev.case.display import FLUID, known, plain
 
     for shown, value in known(fluid.numbers, FLUID):
         yield [shown.name, shown.symbol, shown.text(value)]
+    if fluid.ratios is not None:
+        low, high = (fluid.numbers[f"density_{end}_per_m2"] or 0.0 for end in ("min", "max"))
+        yield [
+            "density over the device",
+            "",
+            f"{plain(low / 1e4)} to {plain(high / 1e4)} cm⁻²; numbers above are at the reference",
+        ]
+
+
+def _regime(regime: Regime) -> Iterator[list[str]]:
+    """The numbers of a regime that are known and bounded."""
+    from fluidev.case.display import plain, with_prefix
+
+    width, lengths = regime.narrowest, regime.lengths
+    yield ["smallest width", "W", f"{with_prefix(width.width, 'm')}, {width.place}"]
+    if math.isfinite(lengths.cyclotron):
+        yield ["cyclotron radius", "R_c", with_prefix(float(lengths.cyclotron), "m")]
+    for name, symbol, value in (
+        ("electron Knudsen number", "l_ee/W", regime.electron_number),
+        ("momentum Knudsen number", "l_mr/W", regime.momentum_number),
+        ("Gurzhi length over width", "D/W", regime.gurzhi_number),
+        ("cyclotron angle", "ω_c τ", regime.turning),
+    ):
+        if value and math.isfinite(value):
+            yield [name, symbol, plain(value)]
 
 
 def _readings(case: Case) -> Iterator[list[str]]:
     for reading in case.readings:
         current = f"current {' → '.join(reading.current)}"
         yield [reading.name, current, f"voltage {' − '.join(reading.voltage)}"]
-
-
-def _narrowest(device: Device) -> float:
-    """Least width of the device, m."""
-    from fluidev.geometry.sizing import local_width, sample_boundary
-
-    points, normals, _ = sample_boundary(device, math.inf)
-    return float(local_width(device, points, normals).min())
 
 
 CHECK = Command(

@@ -33,7 +33,7 @@ def doubts(
 ) -> Iterator[str]:
     """Sentences about what is probably not meant, or not what this model describes.
 
-    size: of the device, m. narrowest: least width of the device, m. numbers: those of its fluid.
+    size: of the device, m. narrowest: width of its narrowest passage, m. numbers: of its fluid.
     """
     for name, width in contact_widths(device).items():
         if width < SMALLEST_CONTACT * size:
@@ -42,6 +42,14 @@ def doubts(
                 "are its points in device.unit?"
             )
     yield from _length_doubts(size, narrowest, numbers)
+    collisions = numbers["electron_mean_free_path_m"] or 0.0
+    small = [name for name, width in contact_widths(device).items() if width < collisions]
+    if small and collisions < narrowest:  # otherwise the verdict on the whole device says it
+        yield (
+            f"electrons fly {_m(collisions)} between collisions, further than contact "
+            f"{', '.join(map(repr, small))} is wide: ballistic around it, and readings close by "
+            "are not to be trusted"
+        )
     if case.fluid.get("hall_viscosity_ratio") and not case.magnetic_field:
         yield "fluid.hall_viscosity_ratio has no effect without a magnetic_field"
     if not case.readings:
@@ -66,11 +74,6 @@ def _length_doubts(
     losses = numbers["momentum_mean_free_path_m"]
     if collisions is None or losses is None:
         return
-    if collisions > narrowest:
-        yield (
-            f"electrons fly {_m(collisions)} between their collisions, further than the narrowest "
-            f"width {_m(narrowest)}: the flow there is ballistic, not that of a fluid"
-        )
     if collisions > losses:
         yield (
             f"electrons lose their momentum within {_m(losses)}, before they meet each other "

@@ -8,13 +8,14 @@ import sys
 from collections.abc import Sequence
 
 from fluidev import __version__
+from fluidev.cli.chart import CHART
 from fluidev.cli.check import CHECK
 from fluidev.cli.map import MAP
 from fluidev.cli.options import Command, Parser, UsageError, add_common
 from fluidev.cli.resist import RESIST
 from fluidev.errors import CaseError, NumericsError
 
-COMMANDS: tuple[Command, ...] = (CHECK, RESIST, MAP)
+COMMANDS: tuple[Command, ...] = (CHECK, RESIST, MAP, CHART)
 
 DONE, FAILED, UNUSABLE = 0, 1, 2
 INTERRUPTED, BROKEN_PIPE = 130, 141  # what a shell reports for SIGINT and SIGPIPE
@@ -30,11 +31,23 @@ def main(argv: Sequence[str] | None = None) -> int:
         if not (stream.encoding or "utf-8").lower().startswith("utf"):
             getattr(stream, "reconfigure", lambda **_: None)(errors="replace")
     try:
+        status = _run(argv)
+        sys.stdout.flush()
+    except BrokenPipeError:
+        # Whoever read our output has left; nothing more can be said there, not even at exit.
+        with contextlib.suppress(OSError, ValueError):
+            os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        return BROKEN_PIPE
+    return status
+
+
+def _run(argv: Sequence[str] | None) -> int:
+    """Do what the command line says; mistakes and failures become a sentence and a status."""
+    try:
         arguments, unknown = parser().parse_known_args(argv)
         if unknown:
             arguments.parser.error(f"unrecognized arguments: {' '.join(unknown)}")
         status: int = arguments.run(arguments)
-        sys.stdout.flush()
         return status
     except SystemExit as leaving:  # --help and --version
         return leaving.code if isinstance(leaving.code, int) else DONE
@@ -44,11 +57,6 @@ def main(argv: Sequence[str] | None = None) -> int:
         return _say(failure, FAILED)
     except KeyboardInterrupt:
         return _say("interrupted", INTERRUPTED)
-    except BrokenPipeError:
-        # Whoever read our output has left; nothing more can be said there, not even at exit.
-        with contextlib.suppress(OSError, ValueError):
-            os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
-        return BROKEN_PIPE
 
 
 def parser() -> Parser:

@@ -16,6 +16,7 @@ from fluidev.cli.text_table import aligned
 
 if TYPE_CHECKING:
     from fluidev.flow.run import Flow
+    from fluidev.readout.regime import Regime
 
 
 def arguments(parser: argparse.ArgumentParser) -> None:
@@ -38,18 +39,23 @@ def run(given: argparse.Namespace) -> int:
         check_writable("--json", target)
     with progress("solving"):
         from fluidev.api import solve
+        from fluidev.readout.regime import regime_of
 
         flow = solve(case)
-        results = results_of(flow)
+        regime = regime_of(case)
+        results = results_of(flow, regime)
     if given.json is not None:
         text = json.dumps(results, ensure_ascii=False, allow_nan=False, indent=1) + "\n"
     if target is not None:
         write_whole("--json", target, text)
-    print(text if given.json == "-" else table_of(flow), end="" if given.json == "-" else "\n")
+    if given.json == "-":
+        print(text, end="")
+    else:
+        print(f"{table_of(flow)}\n{regime.verdict}: {regime.reason}")
     return 0
 
 
-def results_of(flow: Flow) -> dict[str, Any]:
+def results_of(flow: Flow, regime: Regime) -> dict[str, Any]:
     """The results of a flow as JSON has them: SI values, null for what is not known or infinite."""
     return {
         "contacts": list(flow.contacts),
@@ -62,10 +68,14 @@ def results_of(flow: Flow) -> dict[str, Any]:
                 "resistance_ohm": _finite(reading.resistance),
                 "error_ohm": _finite(reading.error),
                 "ohmic_ohm": _finite(reading.ohmic),
+                "reversed_ohm": _finite(reading.reversed),
+                "symmetric_ohm": _finite(reading.symmetric),
+                "antisymmetric_ohm": _finite(reading.antisymmetric),
             }
             for reading in flow.readings
         ],
         "fluid": _finite_values(flow.fluid.numbers),
+        "regime": regime.to_json(),
         "mesh": {"elements": int(flow.mesh.elements), "unknowns": int(flow.unknowns)},
         "case_sha256": flow.case.text_sha256,
         "version": __version__,
@@ -83,6 +93,10 @@ def table_of(flow: Flow) -> str:
         ]
         title = "current into the device at the contact of the row, for 1 V on that of the column"
         return f"{title}\n{aligned(rows, ['', *flow.contacts])}"
+    heads = ["reading", "current", "voltage", "resistance", "ohmic"]
+    in_field = flow.readings[0].reversed is not None
+    if in_field:
+        heads += ["at −B", "symmetric", "antisymmetric"]
     rows = [
         [
             reading.name,
@@ -90,10 +104,15 @@ def table_of(flow: Flow) -> str:
             " − ".join(reading.voltage),
             with_error(reading.resistance, reading.error, "Ω"),
             "none" if reading.ohmic is None else with_prefix(reading.ohmic, "Ω", 4),
+            *(
+                with_prefix(value, "Ω", 5)
+                for value in (reading.reversed, reading.symmetric, reading.antisymmetric)
+                if value is not None
+            ),
         ]
         for reading in flow.readings
     ]
-    return aligned(rows, ["reading", "current", "voltage", "resistance", "ohmic"])
+    return aligned(rows, heads)
 
 
 def _finite(value: float | None) -> float | None:

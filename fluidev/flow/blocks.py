@@ -1,4 +1,4 @@
-"""The weak form of a device as a handful of assembled blocks, one per coefficient.
+"""The weak form of a device as a handful of blocks, one per coefficient.
 
 Mesh lengths (L metres) and the unknown ũ = L ρ₀ u (in A; ρ₀ a reference charge density) make the
 form of the whole problem independent of the fluid: with test functions scaled alike it reads
@@ -10,231 +10,233 @@ form of the whole problem independent of the fluid: with test functions scaled a
 
 and one right-hand side per contact. Coefficients that vary in space enter as ratios to their
 reference inside the integrals; the charge density is never differentiated.
+
+A full solve adds the weighted element matrices up before they are scattered (system.py); a block
+as a sparse matrix of its own is made when somebody asks for it.
 """
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 import scipy.sparse as sp
 
-from fluidev.flow.edges import edge_tables
-from fluidev.flow.products import integrate, tables
+from fluidev.flow.contacts import ContactTrace, contact_trace
+from fluidev.flow.edges import edge_tables, trace_matrix
+from fluidev.flow.products import LocalProducts, scatter
 from fluidev.flow.space import FlowSpace
-
-# Ratio of each coefficient to its reference at points (2, ...) in m; None is a uniform fluid.
-Ratios = Callable[[np.ndarray], "LocalRatios"]
-
-
-@dataclass(frozen=True)
-class LocalRatios:
-    """Coefficients over their reference values at given points; 1.0 or arrays of that shape."""
-
-    charge_density: np.ndarray | float = 1.0
-    shear_viscosity: np.ndarray | float = 1.0
-    bulk_viscosity: np.ndarray | float = 1.0
-    hall_viscosity: np.ndarray | float = 1.0
-    friction: np.ndarray | float = 1.0
-    intrinsic_conductivity: np.ndarray | float = 1.0
-
-
-@dataclass(frozen=True)
-class ContactTrace:
-    """What a contact sees of the unknowns at its quadrature points (nq of them).
-
-    current: (nq, nf) ρ/ρ₀ ũ·n; cross: (nq, nf) (ũ×z)·n; slope, value: (nq, np) ∂φ/∂n and φ;
-    weight: (nq,) edge lengths; penalty: (nq,) γ/h; intrinsic: (nq,) ratio of σ_Q.
-    """
-
-    current: sp.csr_array
-    cross: sp.csr_array
-    slope: sp.csr_array
-    value: sp.csr_array
-    weight: np.ndarray
-    penalty: np.ndarray
-    intrinsic: np.ndarray
+from fluidev.fluid.ratios import Ratios
 
 
 @dataclass(frozen=True)
 class Blocks:
-    """Assembled blocks on the free unknowns: nf velocities and np potentials (see the module).
+    """The blocks of a device on its free unknowns: nf velocities and np potentials.
 
     walls: one block per wall with a slip length above zero, as (wall index, block).
-    mass_x, mass_y are not kept: friction is the velocity mass matrix weighted with k's ratio.
+    contacts: what each contact sees of the unknowns.
     """
 
     space: FlowSpace
-    viscous: sp.csr_array
-    bulk: sp.csr_array
-    hall: sp.csr_array
-    friction: sp.csr_array
-    lorentz: sp.csr_array
-    drag: sp.csr_array
-    coupling: sp.csr_array
-    cross: sp.csr_array
-    intrinsic: sp.csr_array
+    products: LocalProducts
     walls: tuple[tuple[int, sp.csr_array], ...]
     contacts: tuple[ContactTrace, ...]
 
+    @property
+    def velocities(self) -> int:
+        """Number nf of free velocity unknowns."""
+        return self.space.frames.count
+
+    def _velocity_block(self, **parts: float) -> sp.csr_array:
+        local = turned(self.space, velocity_matrix(self.products, **parts))
+        at = self.space.local_unknowns[:, : local.shape[1]]
+        return scatter(local, at, at, (self.velocities, self.velocities))
+
+    @cached_property
+    def viscous(self) -> sp.csr_array:
+        """(nf, nf), weight η: 2 (ε − ½ ∇·u) : ε."""
+        return self._velocity_block(viscous=1.0)
+
+    @cached_property
+    def bulk(self) -> sp.csr_array:
+        """(nf, nf), weight ζ: ∇·u ∇·v."""
+        return self._velocity_block(bulk=1.0)
+
+    @cached_property
+    def hall(self) -> sp.csr_array:
+        """(nf, nf), weight η_H, antisymmetric."""
+        return self._velocity_block(hall=1.0)
+
+    @cached_property
+    def friction(self) -> sp.csr_array:
+        """(nf, nf), weight k: u · v."""
+        return self._velocity_block(friction=1.0)
+
+    @cached_property
+    def lorentz(self) -> sp.csr_array:
+        """(nf, nf), weight B: −(ρ u × z) · v, antisymmetric."""
+        return self._velocity_block(lorentz=1.0)
+
+    @cached_property
+    def drag(self) -> sp.csr_array:
+        """(nf, nf), weight σ_Q B²: u · v."""
+        return self._velocity_block(drag=1.0)
+
+    @cached_property
+    def coupling(self) -> sp.csr_array:
+        """(nf, np), ρ v·∇φ less its contact term."""
+        return self._coupling_block(1.0, 0.0) + self.coupling_at_contacts
+
+    @cached_property
+    def cross(self) -> sp.csr_array:
+        """(nf, np), weight σ_Q B: (v×z)·(−∇φ) and its contact term."""
+        return self._coupling_block(0.0, 1.0) + self.cross_at_contacts
+
+    def _coupling_block(self, coupling: float, cross: float) -> sp.csr_array:
+        local = turned_rows(self.space, coupling_matrix(self.products, coupling, cross))
+        at = self.space.local_unknowns
+        rows, columns = at[:, : local.shape[1]], at[:, local.shape[1] :] - self.velocities
+        return scatter(local, rows, columns, (self.velocities, self.space.potentials))
+
+    @cached_property
+    def coupling_at_contacts(self) -> sp.csr_array:
+        """−∮ ρ v_n φ over the contacts."""
+        parts = [t.current.T @ sp.diags_array(t.weight) @ t.value for t in self.contacts]
+        return sp.csr_array(-sum(parts))
+
+    @cached_property
+    def cross_at_contacts(self) -> sp.csr_array:
+        """∮ σ_Q (v×z)_n φ over the contacts, per σ_Q B."""
+        parts = [
+            t.cross.T @ sp.diags_array(t.weight * t.intrinsic) @ t.value for t in self.contacts
+        ]
+        return sp.csr_array(sum(parts))
+
+    @cached_property
+    def intrinsic(self) -> sp.csr_array:
+        """(np, np), weight σ_Q: ∇φ·∇ψ with the weak contact terms."""
+        at = self.space.potential.element_dofs.T
+        size = self.space.potentials
+        inner = scatter(self.products.intrinsic, at, at, (size, size))
+        return inner + self.intrinsic_at_contacts
+
+    @cached_property
+    def intrinsic_at_contacts(self) -> sp.csr_array:
+        """∮ −∂_nφ ψ − φ ∂_nψ + (γ/h) φ ψ over the contacts, per σ_Q."""
+        total = None
+        for t in self.contacts:
+            weight = sp.diags_array(t.weight * t.intrinsic)
+            consistency = t.value.T @ weight @ t.slope
+            penalty = t.value.T @ sp.diags_array(t.weight * t.intrinsic * t.penalty) @ t.value
+            part = penalty - consistency - consistency.T
+            total = part if total is None else total + part
+        return sp.csr_array(total)
+
 
 def assemble(space: FlowSpace, ratios: Ratios | None = None) -> Blocks:
-    """All blocks of a device; ratios gives the local coefficients of a fluid that varies."""
-    mesh, v, p = space.mesh, space.velocity, space.potential
-    project = space.prolongation
-
-    def local(points: np.ndarray) -> LocalRatios:
-        if ratios is None:
-            return LocalRatios()
-        return ratios(points * mesh.scale + mesh.origin.reshape((2,) + (1,) * (points.ndim - 1)))
-
-    at = local(np.asarray(v.global_coordinates()))
-    value, slope = tables(v)
-    _, lower = tables(p)
-    dx = v.dx
-
-    def products(weight):
-        w = dx * weight
-        xx = integrate(slope[:, 0], slope[:, 0], w, v, v)
-        yy = integrate(slope[:, 1], slope[:, 1], w, v, v)
-        xy = integrate(slope[:, 0], slope[:, 1], w, v, v)
-        return xx, xy, yy
-
-    def mass(weight):
-        return integrate(value, value, dx * weight, v, v)
-
-    def velocity(a, b, c, d):
-        return sp.csr_array(project.T @ sp.block_array([[a, b], [c, d]], format="csr") @ project)
-
-    xx, xy, yy = products(at.shear_viscosity)
-    skew = _pruned(xy.T - xy)
-    viscous = velocity(xx + yy, skew, skew.T, xx + yy)
-    if at.bulk_viscosity is not at.shear_viscosity:
-        xx, xy, yy = products(at.bulk_viscosity)
-    bulk = velocity(xx, xy, xy.T, yy)
-    if at.hall_viscosity is not at.bulk_viscosity:
-        xx, xy, yy = products(at.hall_viscosity)
-    turn = _pruned(xy - xy.T)
-    hall = velocity(turn, xx + yy, -(xx + yy), turn)
-
-    unit = mass(at.friction)
-    friction = velocity(unit, None, None, unit)
-    if at.charge_density is not at.friction:
-        unit = mass(at.charge_density)
-    lorentz = velocity(None, -unit, unit, None)
-    if at.intrinsic_conductivity is not at.charge_density:
-        unit = mass(at.intrinsic_conductivity)
-    drag = velocity(unit, None, None, unit)
-
-    w = dx * at.charge_density
-    coupling = sp.vstack([integrate(value, lower[:, i], w, v, p) for i in (0, 1)], format="csr")
-    w = dx * at.intrinsic_conductivity
-    cross = sp.vstack(
-        [integrate(value, lower[:, 1], w, v, p), -integrate(value, lower[:, 0], w, v, p)],
-        format="csr",
-    )
-    intrinsic = sum(integrate(lower[:, i], lower[:, i], w, p, p) for i in (0, 1))
-
-    traces = []
-    for contact in range(len(mesh.device.contacts)):
-        trace = _contact_trace(space, mesh.stretches_of_contact(contact), local)
-        traces.append(trace)
-        q = sp.diags_array(trace.weight)
-        s = sp.diags_array(trace.weight * trace.intrinsic)
-        coupling = coupling - trace.current.T @ q @ trace.value
-        cross = cross + trace.cross.T @ s @ trace.value
-        consistency = trace.value.T @ s @ trace.slope
-        penalty = trace.value.T @ (s @ sp.diags_array(trace.penalty)) @ trace.value
-        intrinsic = intrinsic - consistency - consistency.T + penalty
+    """The blocks of a device; ratios gives the local coefficients of a fluid that varies."""
+    mesh = space.mesh
     walls = tuple(
-        (wall, _wall_block(space, mesh.stretches_of_wall(wall), local))
+        (wall, _wall_block(space, mesh.stretches_of_wall(wall), ratios))
         for wall, kind in enumerate(mesh.device.walls)
         if kind.slip_length > 0 and mesh.stretches_of_wall(wall)
     )
-    free = project.T
-    return Blocks(
-        space,
-        viscous,
-        bulk,
-        hall,
-        friction,
-        lorentz,
-        drag,
-        sp.csr_array(free @ coupling),
-        sp.csr_array(free @ cross),
-        sp.csr_array(intrinsic),
-        walls,
-        tuple(
-            ContactTrace(
-                sp.csr_array(t.current @ project),
-                sp.csr_array(t.cross @ project),
-                t.slope,
-                t.value,
-                t.weight,
-                t.penalty,
-                t.intrinsic,
-            )
-            for t in traces
-        ),
+    contacts = tuple(
+        contact_trace(space, mesh.stretches_of_contact(i), ratios)
+        for i in range(len(mesh.device.contacts))
     )
+    return Blocks(space, LocalProducts(space, ratios), walls, contacts)
 
 
-def _pruned(matrix: sp.csr_array) -> sp.csr_array:
-    """The matrix without entries that are zero to rounding.
+def velocity_matrix(
+    products: LocalProducts,
+    viscous: float = 0.0,
+    bulk: float = 0.0,
+    hall: float = 0.0,
+    friction: float = 0.0,
+    lorentz: float = 0.0,
+    drag: float = 0.0,
+) -> np.ndarray:
+    """Weighted sum of the velocity blocks on every element, (ne, 2·nb, 2·nb), components x, y.
 
-    For a uniform viscosity ∂_x N_i ∂_y N_j − ∂_y N_i ∂_x N_j is a divergence: inside, it cancels.
+    With σ' and ε written out in components and i the test function, j the trial function.
     """
-    out = sp.csr_array(matrix)
-    if out.nnz:
-        out.data[np.abs(out.data) < 1e-14 * np.abs(out.data).max()] = 0.0
-        out.eliminate_zeros()
+    nb = products.space.velocity.Nbfun
+    out = np.zeros((products.space.mesh.elements, 2 * nb, 2 * nb))
+    a, b, c, d = out[:, :nb, :nb], out[:, :nb, nb:], out[:, nb:, :nb], out[:, nb:, nb:]
+    at = products.at
+    if viscous:
+        xx, xy, yy = products.slopes(at.shear_viscosity)
+        both = viscous * (xx + yy)
+        skew = viscous * (xy.transpose(0, 2, 1) - xy)
+        a += both
+        d += both
+        b += skew
+        c -= skew
+    if bulk:
+        xx, xy, yy = products.slopes(at.bulk_viscosity)
+        a += bulk * xx
+        b += bulk * xy
+        c += bulk * xy.transpose(0, 2, 1)
+        d += bulk * yy
+    if hall:
+        xx, xy, yy = products.slopes(at.hall_viscosity)
+        both = hall * (xx + yy)
+        skew = hall * (xy - xy.transpose(0, 2, 1))
+        a += skew
+        d += skew
+        b += both
+        c -= both
+    for weight, ratio in ((friction, at.friction), (drag, at.intrinsic_conductivity)):
+        if weight:
+            mass = weight * products.mass(ratio)
+            a += mass
+            d += mass
+    if lorentz:
+        mass = lorentz * products.mass(at.charge_density)
+        b -= mass
+        c += mass
     return out
 
 
-def _trace(values: np.ndarray, dofs: np.ndarray, size: int) -> sp.csr_array:
-    """Sparse matrix (nq, size) from local values (nb, nf, nq) and unknowns (nb, nf)."""
-    row = np.broadcast_to(np.arange(values[0].size).reshape(values[0].shape), values.shape)
-    column = np.broadcast_to(dofs[:, :, None], values.shape)
-    return sp.csr_array(
-        sp.coo_array(
-            (values.ravel(), (row.ravel(), column.ravel())), shape=(values[0].size, size)
-        )
-    )
+def coupling_matrix(products: LocalProducts, coupling: float, cross: float) -> np.ndarray:
+    """Weighted sum of the velocity–potential blocks on every element, (ne, 2·nb, mb)."""
+    x, y = products.slope_of_potential(products.at.charge_density)
+    out = coupling * np.concatenate([x, y], axis=1)
+    if cross:
+        x, y = products.slope_of_potential(products.at.intrinsic_conductivity)
+        out += cross * np.concatenate([y, -x], axis=1)
+    return out
 
 
-def _contact_trace(space: FlowSpace, stretches: list[int], local) -> ContactTrace:
-    v, p = space.velocity, space.potential
-    edges = space.edges(stretches)
-    value, _, dofs = edge_tables(v, edges)
-    lower, slope, lower_dofs = edge_tables(p, edges)
-    n = edges.normals
-    at = local(edges.points)
-    x, y = _trace(value * n[0], dofs, v.N), _trace(value * n[1], dofs, v.N)
-    density = sp.diags_array(np.broadcast_to(at.charge_density, edges.dx.shape).ravel())
-    height = 2 * space.mesh_areas(edges.elements) / edges.dx.sum(axis=1)
-    k = space.degree - 1
-    # Twice the constant of the trace inequality for ∇φ (T. Warburton, J. S. Hesthaven,
-    # Comput. Methods Appl. Mech. Engrg 192, 2765 (2003)) and some room for curved edges.
-    penalty = 3.0 * k * (k + 1) / height
-    return ContactTrace(
-        sp.csr_array(density @ sp.hstack([x, y])),
-        # (ũ×z)·n = ũ_y n_x − ũ_x n_y
-        sp.csr_array(sp.hstack([-y, x])),
-        _trace(np.einsum("bdfq,dfq->bfq", slope, n), lower_dofs, p.N),
-        _trace(lower, lower_dofs, p.N),
-        edges.dx.ravel(),
-        np.repeat(penalty, edges.dx.shape[1]),
-        np.broadcast_to(at.intrinsic_conductivity, edges.dx.shape).ravel().astype(float),
-    )
+def turned(space: FlowSpace, local: np.ndarray) -> np.ndarray:
+    """Element matrices (ne, 2·nb [+ mb], same) turned from x, y into the frames of their nodes."""
+    rows = turned_rows(space, local)
+    return turned_rows(space, rows.transpose(0, 2, 1)).transpose(0, 2, 1)
 
 
-def _wall_block(space: FlowSpace, stretches: list[int], local) -> sp.csr_array:
+def turned_rows(space: FlowSpace, local: np.ndarray) -> np.ndarray:
+    """Rows turned from x, y into the frames of their nodes, (ne, 2·nb [+ mb], m)."""
+    nodes = space.velocity.element_dofs.T
+    which = np.flatnonzero(space.frames.turned[nodes].any(axis=1))
+    if not len(which):
+        return local
+    size = 2 * nodes.shape[1]
+    axes = space.frames.axes[nodes[which]]  # (n, nb, frame, xy)
+    part = local[which, :size].reshape(len(which), 2, nodes.shape[1], -1)
+    out = local.copy()
+    out[which, :size] = np.einsum("nbac,ncbm->nabm", axes, part).reshape(len(which), size, -1)
+    return out
+
+
+def _wall_block(space: FlowSpace, stretches: list[int], ratios: Ratios | None) -> sp.csr_array:
+    """∮ (η ratio) u_t v_t along a wall."""
     edges = space.edges(stretches)
     value, _, dofs = edge_tables(space.velocity, edges)
     n = edges.normals
-    x = _trace(value * -n[1], dofs, space.nodes)
-    y = _trace(value * n[0], dofs, space.nodes)
-    along = sp.csr_array(sp.hstack([x, y])) @ space.prolongation
-    weight = sp.diags_array((edges.dx * local(edges.points).shear_viscosity).ravel())
-    return sp.csr_array(along.T @ weight @ along)
+    x = trace_matrix(value * -n[1], dofs, space.nodes)
+    y = trace_matrix(value * n[0], dofs, space.nodes)
+    along = sp.csr_array(sp.hstack([x, y]) @ space.prolongation)
+    weight = edges.dx * edges.ratios(space.mesh, ratios).shear_viscosity
+    return sp.csr_array(along.T @ sp.diags_array(weight.ravel()) @ along)

@@ -9,9 +9,13 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
+import scipy.sparse as sp
 from skfem import CellBasis
 from skfem.quadrature import get_quadrature
 from skfem.refdom import RefLine
+
+from fluidev.fluid.ratios import LocalRatios, Ratios
+from fluidev.geometry.mesh import DeviceMesh
 
 # Reference edges of scikit-fem's triangle: from, along.
 _FROM = np.array([[0.0, 0.0], [1.0, 0.0], [0.0, 0.0]])
@@ -31,6 +35,12 @@ class Edges:
     points: np.ndarray
     normals: np.ndarray
     dx: np.ndarray
+
+    def ratios(self, mesh: DeviceMesh, ratios: Ratios | None) -> LocalRatios:
+        """Ratios of the coefficients at the points of the edges."""
+        if ratios is None:
+            return LocalRatios()
+        return ratios(self.points * mesh.scale + mesh.origin[:, None, None])
 
 
 def along_edges(basis: CellBasis, facets: np.ndarray, order: int) -> Edges:
@@ -63,3 +73,12 @@ def edge_tables(basis: CellBasis, edges: Edges) -> tuple[np.ndarray, np.ndarray,
     values = np.array([np.broadcast_to(np.asarray(f), edges.dx.shape) for f in fields])
     gradients = np.array([np.asarray(f.grad) for f in fields])
     return values, gradients, basis.element_dofs[:, edges.elements]
+
+
+def trace_matrix(values: np.ndarray, dofs: np.ndarray, size: int) -> sp.csr_array:
+    """Sparse matrix (points, size) from local values (nb, nf, nq) and unknowns (nb, nf)."""
+    row = np.broadcast_to(np.arange(values[0].size).reshape(values[0].shape), values.shape)
+    column = np.broadcast_to(dofs[:, :, None], values.shape)
+    return sp.coo_array(
+        (values.ravel(), (row.ravel(), column.ravel())), shape=(values[0].size, size)
+    ).tocsr()

@@ -14,31 +14,40 @@ from fluidev.errors import NumericsError
 
 # Largest relative residual (row by row, against |K||x| + |b|) that is not remarked upon.
 _RESIDUAL = 1e-10
+# A residual below this is as good as rounding lets it be.
+_GOOD = 1e-13
 
 
 @dataclass(frozen=True)
 class Factor:
-    """A factorised matrix; solve() takes right-hand sides in the original order."""
+    """A factorised matrix; solve() takes right-hand sides in the original order and scale.
+
+    matrix: the balanced matrix S K S; balance: (n,) the diagonal of S; order: of elimination.
+    """
 
     matrix: sp.csc_array
+    balance: np.ndarray
     order: np.ndarray
     lu: Any
 
-    def solve(self, loads: np.ndarray) -> np.ndarray:
+    def solve(self, loads: np.ndarray, transposed: bool = False) -> np.ndarray:
         """Solutions (n, m) for loads (n, m), with iterative refinement until it stops helping.
 
-        Warns where the residual stays above rounding level.
+        transposed: solve with the transposed matrix. Warns where the residual stays above
+        rounding level.
         """
-        found = self._once(loads)
-        scale = abs(self.matrix) @ np.abs(found) + np.abs(loads)
+        matrix = self.matrix.T if transposed else self.matrix
+        loads = self.balance[:, None] * loads
+        found = self._once(loads, transposed)
+        scale = abs(matrix) @ np.abs(found) + np.abs(loads)
         scale = scale.max(axis=0, keepdims=True) + np.finfo(float).tiny
-        residual = loads - self.matrix @ found
+        residual = loads - matrix @ found
         size = float((np.abs(residual) / scale).max())
         for _ in range(3):
-            if size < 1e-15:
+            if size < _GOOD:
                 break
-            better = found + self._once(residual)
-            residual_then = loads - self.matrix @ better
+            better = found + self._once(residual, transposed)
+            residual_then = loads - matrix @ better
             size_then = float((np.abs(residual_then) / scale).max())
             if not size_then < size:
                 break
@@ -54,21 +63,25 @@ class Factor:
                 RuntimeWarning,
                 stacklevel=2,
             )
-        return found
+        return self.balance[:, None] * found
 
-    def _once(self, loads: np.ndarray) -> np.ndarray:
+    def _once(self, loads: np.ndarray, transposed: bool) -> np.ndarray:
         found = np.empty_like(loads)
-        found[self.order] = self.lu.solve(np.ascontiguousarray(loads[self.order]))
+        turned = np.ascontiguousarray(loads[self.order])
+        found[self.order] = self.lu.solve(turned, "T" if transposed else "N")
         return found
 
 
 def factorise(matrix: sp.csc_array, order: np.ndarray) -> Factor:
-    """SuperLU factors of a matrix, eliminated in the given order.
+    """SuperLU factors of a matrix, balanced and eliminated in the given order.
 
     The order comes from nested dissection, so pivots stay on the diagonal unless one is a
     thousand times smaller than its column. Raises NumericsError for a singular matrix.
     """
-    turned = sp.csc_array(matrix[order][:, order])
+    balance = _balance(matrix)
+    scale = sp.diags_array(balance)
+    balanced = sp.csc_array(scale @ matrix @ scale)
+    turned = sp.csc_array(balanced[order][:, order])
     try:
         lu = splu(
             turned,
@@ -78,4 +91,22 @@ def factorise(matrix: sp.csc_array, order: np.ndarray) -> Factor:
         )
     except RuntimeError as error:
         raise NumericsError(f"the flow equations are singular ({error})") from error
-    return Factor(matrix, order, lu)
+    return Factor(balanced, balance, order, lu)
+
+
+def _balance(matrix: sp.csc_array) -> np.ndarray:
+    """Scales (n,) that bring the pivots near one.
+
+    Velocities have positive diagonals. A potential's pivot is what eliminating its velocities
+    leaves, Σ C²/A and its own diagonal: it shrinks with the square of its elements' size, which
+    spans many decades in a mesh that is graded to corners.
+    """
+    diagonal = matrix.diagonal()
+    positive = diagonal > 0
+    pivot = np.abs(diagonal)
+    rest = np.flatnonzero(~positive)
+    if len(rest):
+        rows = matrix.tocsr()[rest][:, np.flatnonzero(positive)]
+        pivot[rest] += (rows.multiply(rows)) @ (1.0 / diagonal[positive])
+    pivot[pivot == 0] = 1.0
+    return 1.0 / np.sqrt(pivot)

@@ -8,6 +8,7 @@ from functools import cached_property
 import numpy as np
 
 from fluidev.flow.blocks import Blocks
+from fluidev.flow.system import Solution
 from fluidev.flow.weights import Weights
 from fluidev.fluid.coefficients import FluidCoefficients
 from fluidev.geometry.mesh import DeviceMesh
@@ -33,20 +34,17 @@ def four_terminal(
 ) -> float:
     """R = (V_k − V_l)/I for 1 A in at i and out at j, no current elsewhere; in Ω.
 
-    conductance: (N, N) in S with zero row sums. The last contact is grounded, so N − 1 equations
-    are left; differences of potential do not depend on that choice.
+    conductance: (N, N) in S with zero row sums.
     """
-    count = len(conductance)
-    drive = np.zeros(count)
-    drive[current[0]] += 1.0
-    drive[current[1]] -= 1.0
-    potential = np.zeros(count)
-    potential[:-1] = np.linalg.solve(conductance[:-1, :-1], drive[:-1])
+    potential = contact_potentials(conductance, current)
     return float(potential[voltage[0]] - potential[voltage[1]])
 
 
 def contact_potentials(conductance: np.ndarray, current: tuple[int, int]) -> np.ndarray:
-    """Potentials (N,) in V of the contacts for 1 A from i to j; their mean over the pair is 0."""
+    """Potentials (N,) in V of the contacts for 1 A from i to j; their mean over the pair is 0.
+
+    The last contact is grounded, so N − 1 equations are left; then the potential is shifted.
+    """
     count = len(conductance)
     drive = np.zeros(count)
     drive[current[0]] += 1.0
@@ -60,17 +58,25 @@ def contact_potentials(conductance: np.ndarray, current: tuple[int, int]) -> np.
 class FlowSolution:
     """Every flow of a device.
 
-    contacts: names. conductance: (N, N) in S, current into the device at row for 1 V at column.
-    states: (nf + np, N), the flow for 1 V at each contact in scaled unknowns: the velocities are
-    ũ · unit with ũ = (mesh length) · ρ₀ u in A, the potentials are in V.
+    contacts: names. solution: the conductance matrix and the flow for 1 V at each contact, as
+    solved: the velocities are ũ · unit with ũ = (mesh length) · ρ₀ u in A, the potentials in V.
     """
 
     contacts: tuple[str, ...]
-    conductance: np.ndarray
-    states: np.ndarray = field(repr=False)
     blocks: Blocks = field(repr=False)
     weights: Weights = field(repr=False)
     coefficients: FluidCoefficients
+    solution: Solution = field(repr=False)
+
+    @property
+    def conductance(self) -> np.ndarray:
+        """(N, N) in S, current into the device at row for 1 V at column."""
+        return self.solution.conductance
+
+    @property
+    def states(self) -> np.ndarray:
+        """(nf + np, N) free unknowns of the flow for 1 V at each contact, scaled."""
+        return self.solution.states
 
     @property
     def mesh(self) -> DeviceMesh:
@@ -97,7 +103,7 @@ class FlowSolution:
         Shapes (2, nv, N) in A/m per volt and (np, N) in V per volt.
         """
         space = self.blocks.space
-        split = self.blocks.coupling.shape[0]
+        split = self.blocks.velocities
         velocity = space.prolongation @ self.states[:split]
         velocity = velocity.reshape(2, space.nodes, -1)
         return velocity / (self.weights.unit * space.mesh.scale), self.states[split:]

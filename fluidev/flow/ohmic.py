@@ -10,12 +10,12 @@ import numpy as np
 import scipy.sparse as sp
 
 from fluidev.errors import NumericsError
-from fluidev.flow.blocks import LocalRatios, Ratios
 from fluidev.flow.edges import edge_tables
 from fluidev.flow.factor import factorise
-from fluidev.flow.products import integrate, tables
+from fluidev.flow.products import LocalProducts, integrate, scatter, tables
 from fluidev.flow.space import FlowSpace
 from fluidev.fluid.coefficients import FluidCoefficients
+from fluidev.fluid.ratios import LocalRatios, Ratios
 
 
 def ohmic_tensor(
@@ -48,22 +48,17 @@ def ohmic_conductance(
     if coefficients.friction == 0:
         return None
     mesh, basis = space.mesh, space.velocity
-    local = LocalRatios()
-    if ratios is not None:
-        local = ratios(
-            np.asarray(basis.global_coordinates()) * mesh.scale + mesh.origin[:, None, None]
-        )
-    along, across = ohmic_tensor(coefficients, local)
+    along, across = ohmic_tensor(coefficients, LocalProducts(space, ratios).at)
     unit = float(np.max(np.abs(along)))
-    _, slope = tables(basis)
-    dx = basis.dx
-    w = dx * along / unit
-    stiffness = sum(integrate(slope[:, i], slope[:, i], w, basis, basis) for i in (0, 1))
+    x, y = tables(basis).slope
+    w = basis.dx * along / unit
+    local = integrate(x, x, w) + integrate(y, y, w)
     if coefficients.magnetic_field:
         # ∫ j·∇ψ with j = σ E, E = −∇φ; the antisymmetric part couples ∂_x and ∂_y.
-        w = dx * across / unit
-        cross = integrate(slope[:, 0], slope[:, 1], w, basis, basis)
-        stiffness = stiffness + cross - cross.T
+        cross = integrate(x, y, basis.dx * across / unit)
+        local += cross - cross.transpose(0, 2, 1)
+    at = basis.element_dofs.T
+    stiffness = scatter(local, at, at, (space.nodes, space.nodes))
     count = len(mesh.device.contacts)
     held = np.full(space.nodes, -1)
     loads = np.zeros((space.nodes, count))
@@ -76,12 +71,8 @@ def ohmic_conductance(
         edges = space.edges(stretches)
         value, _, dofs = edge_tables(basis, edges)
         weight = edges.dx * (mesh.scale / contact.resistance / unit)
-        local_matrix = np.einsum("afq,bfq,fq->fab", value, value, weight)
-        rows = np.broadcast_to(dofs.T[:, :, None], local_matrix.shape)
-        columns = np.broadcast_to(dofs.T[:, None, :], local_matrix.shape)
-        stiffness = stiffness + sp.coo_array(
-            (local_matrix.ravel(), (rows.ravel(), columns.ravel())), shape=stiffness.shape
-        )
+        robin = np.einsum("afq,bfq,fq->fab", value, value, weight)
+        stiffness = stiffness + scatter(robin, dofs.T, dofs.T, stiffness.shape)
         np.add.at(loads[:, index], dofs.ravel(), np.einsum("afq,fq->af", value, weight).ravel())
         series.append(index)
     stiffness = sp.csr_array(stiffness)

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-import math
+from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass, field
 from functools import cached_property
 
@@ -10,25 +10,32 @@ import numpy as np
 
 from fluidev.case.load import Case
 from fluidev.flow.blocks import assemble
-from fluidev.flow.flow import Estimate, FlowSolution, four_terminal
+from fluidev.flow.error import ErrorShares, error_shares
+from fluidev.flow.flow import Estimate, FlowSolution, contact_potentials, four_terminal
+from fluidev.flow.meshes import layer_lengths, mesh_of
 from fluidev.flow.ohmic import ohmic_conductance
+from fluidev.flow.parts import parts_of
 from fluidev.flow.rigid import refuse_rigid_motion
 from fluidev.flow.space import FlowSpace
 from fluidev.flow.system import solve
 from fluidev.flow.weights import weigh
-from fluidev.fluid import Fluid, fluid_of
+from fluidev.fluid import Fluid
 from fluidev.fluid.coefficients import FluidCoefficients
-from fluidev.geometry.build import build_device
+from fluidev.fluid.ratios import Ratios
 from fluidev.geometry.device import Device
 from fluidev.geometry.mesh import DeviceMesh
 from fluidev.geometry.meshing import MeshSettings, mesh_device
+from fluidev.progress import progress
 
 DEGREE = 4
 
 
 @dataclass(frozen=True)
 class Reading:
-    """One four-terminal reading of a case; resistances in Ω, ohmic None where there is no friction."""
+    """One four-terminal reading of a case, in Ω; ohmic is None where there is no friction.
+
+    reversed: the same reading in the opposite field, None without a field.
+    """
 
     name: str
     current: tuple[str, str]
@@ -36,20 +43,31 @@ class Reading:
     resistance: float
     error: float
     ohmic: float | None
+    reversed: float | None = None
+
+    @property
+    def symmetric(self) -> float | None:
+        """The part that does not change with the sign of the field."""
+        return None if self.reversed is None else 0.5 * (self.resistance + self.reversed)
+
+    @property
+    def antisymmetric(self) -> float | None:
+        """The part that changes sign with the field (what a Hall measurement takes)."""
+        return None if self.reversed is None else 0.5 * (self.resistance - self.reversed)
 
 
 @dataclass(frozen=True)
 class Flow:
     """A solved case: ask it for resistances.
 
-    solution: the flow of the default mesh. finer: conductance matrix of the finer computation that
-    the errors are judged by. ohmic: conductance matrix without viscosity, or None.
+    solution: the flow of the default mesh. shares: where its discretisation error sits.
+    ohmic_conductance: the conductance matrix without viscosity, or None without friction.
     """
 
     case: Case
     fluid: Fluid
     solution: FlowSolution = field(repr=False)
-    finer: np.ndarray = field(repr=False)
+    shares: ErrorShares = field(repr=False)
     ohmic_conductance: np.ndarray | None = field(repr=False)
 
     @property
@@ -79,8 +97,25 @@ class Flow:
         """
         i, j = (self.solution.index(c) for c in current)
         k, l = (self.solution.index(c) for c in voltage)
-        value = four_terminal(self.conductance, (i, j), (k, l))
-        return Estimate(value, abs(four_terminal(self.finer, (i, j), (k, l)) - value))
+        return Estimate(
+            four_terminal(self.conductance, (i, j), (k, l)),
+            self.shares.bar(
+                # The adjoint of a reading is the flow driven through its voltage pair, in the
+                # reversed field: G(−B) = G(B)ᵀ.
+                contact_potentials(self.conductance.T, (k, l)),
+                contact_potentials(self.conductance, (i, j)),
+            ),
+        )
+
+    def reversed_resistance(
+        self, current: tuple[str, str], voltage: tuple[str, str]
+    ) -> float | None:
+        """The same reading in the opposite field, in Ω, by G(−B) = G(B)ᵀ; None without a field."""
+        if not self.fluid.coefficients.magnetic_field:
+            return None
+        i, j = (self.solution.index(c) for c in current)
+        k, l = (self.solution.index(c) for c in voltage)
+        return four_terminal(self.conductance.T, (i, j), (k, l))
 
     def ohmic(self, current: tuple[str, str], voltage: tuple[str, str]) -> float | None:
         """The same reading without viscosity, in Ω; None without friction."""
@@ -104,6 +139,7 @@ class Flow:
                     estimate.value,
                     estimate.error,
                     self.ohmic(wanted.current, wanted.voltage),
+                    self.reversed_resistance(wanted.current, wanted.voltage),
                 )
             )
         return tuple(found)
@@ -115,38 +151,38 @@ def solve_device(
     degree: int = DEGREE,
     settings: MeshSettings = MeshSettings(),
     mesh: DeviceMesh | None = None,
+    ratios: Ratios | None = None,
 ) -> FlowSolution:
     """All flows of a device with one fluid; the mesh is made unless one is given.
 
+    ratios: local coefficients over those given, for a fluid that varies; the mesh is then to follow
+    it (flow.meshes).
     Raises NumericsError where nothing limits the flow.
     """
     if mesh is None:
         mesh = mesh_device(device, *layer_lengths(coefficients), settings)
-    blocks = assemble(FlowSpace(mesh, degree))
+    blocks = assemble(FlowSpace(mesh, degree), ratios)
     weights = weigh(coefficients, device, mesh.scale)
     refuse_rigid_motion(blocks, weights)
     solution = solve(blocks, weights)
     names = tuple(contact.name for contact in device.contacts)
-    return FlowSolution(
-        names, solution.conductance, solution.states, blocks, weights, coefficients
-    )
-
-
-def layer_lengths(coefficients: FluidCoefficients) -> tuple[float, float]:
-    """Gurzhi length and thickness of the intrinsic layer at contacts, in m; inf where absent."""
-    c = coefficients
-    gurzhi = math.sqrt(c.shear_viscosity / c.friction) if c.friction else math.inf
-    layer = math.sqrt(c.shear_viscosity * c.intrinsic_conductivity) / abs(c.charge_density)
-    return gurzhi, layer or math.inf
+    return FlowSolution(names, blocks, weights, coefficients, solution)
 
 
 def solve_case(case: Case) -> Flow:
     """The solved flow of a case, with an error on every reading and the ohmic values beside it."""
-    device, fluid = build_device(case), fluid_of(case)
-    coefficients = fluid.coefficients
-    solution = solve_device(device, coefficients)
-    space = solution.blocks.space
-    finer = solve_device(device, coefficients, degree=DEGREE + 1, mesh=space.mesh)
-    return Flow(
-        case, fluid, solution, finer.conductance, ohmic_conductance(space, coefficients)
-    )
+    parts = parts_of(case)
+    device, fluid = parts.device, parts.fluid
+    coefficients, ratios = fluid.coefficients, fluid.ratios
+    with progress("meshing"):
+        mesh = mesh_of(parts)
+    assert mesh.skfem.t.size  # made once, before two threads ask for it
+    with progress("solving"), ThreadPoolExecutor(2) as pool:
+        # The factorisations release the interpreter, so the finer solve costs little time.
+        finer = pool.submit(
+            solve_device, device, coefficients, DEGREE + 1, mesh=mesh, ratios=ratios
+        )
+        solution = solve_device(device, coefficients, mesh=mesh, ratios=ratios)
+        ohmic = ohmic_conductance(solution.blocks.space, coefficients, ratios)
+        shares = error_shares(solution, finer.result())
+    return Flow(case, fluid, solution, shares, ohmic)

@@ -52,7 +52,9 @@ def weigh(
         intrinsic=c.intrinsic_conductivity * unit,
         field=field / unit,
         walls=tuple(
-            0.0 if w.slip_length == 0 or math.isinf(w.slip_length) else viscous / unit * scale / w.slip_length
+            0.0
+            if w.slip_length == 0 or math.isinf(w.slip_length)
+            else viscous / unit * scale / w.slip_length
             for w in device.walls
         ),
         contacts=tuple(contact.resistance / scale / unit for contact in device.contacts),

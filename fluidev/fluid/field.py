@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 from typing import Annotated
 
 from pydantic import BeforeValidator
@@ -10,7 +9,7 @@ from pydantic import BeforeValidator
 from fluidev.case.units import parse_number
 from fluidev.case.words import describe
 from fluidev.errors import CaseError
-from fluidev.fluid.carriers import Carriers
+from fluidev.fluid.carriers import Carriers, Value
 
 KINETIC = "kinetic"
 
@@ -29,7 +28,7 @@ def _ratio(value: object) -> float | str:
 HallRatio = Annotated[float | str, BeforeValidator(_ratio)]
 
 
-def cyclotron_frequency(carriers: Carriers, magnetic_field: float) -> float | None:
+def cyclotron_frequency(carriers: Carriers[Value], magnetic_field: float) -> Value | None:
     """ω_c = qB/m in 1/s, with the sign of qB; None where the mass is not known.
 
     magnetic_field: T, along +z.
@@ -39,7 +38,7 @@ def cyclotron_frequency(carriers: Carriers, magnetic_field: float) -> float | No
     return carriers.charge * magnetic_field / carriers.mass
 
 
-def stress_relaxation_time(kinematic_viscosity: float, fermi_velocity: float) -> float:
+def stress_relaxation_time(kinematic_viscosity: Value, fermi_velocity: Value) -> Value:
     """τ₂ = 4ν/v_F² in s, from ν = v_F² τ₂/4. kinematic_viscosity: ν, m²/s; fermi_velocity: m/s.
 
     Source: P. S. Alekseev, Phys. Rev. Lett. 117, 166601 (2016), two dimensions.
@@ -47,7 +46,7 @@ def stress_relaxation_time(kinematic_viscosity: float, fermi_velocity: float) ->
     return 4.0 * kinematic_viscosity / fermi_velocity**2
 
 
-def kinetic_viscosities(shear: float, turning: float) -> tuple[float, float]:
+def kinetic_viscosities(shear: Value, turning: Value) -> tuple[Value, Value]:
     """η(B) = η/(1 + x²) and η_H(B) = η x/(1 + x²) with x = 2 ω_c τ₂, in the unit of η.
 
     shear: η at zero field. turning: x, signed as qB.
@@ -57,12 +56,12 @@ def kinetic_viscosities(shear: float, turning: float) -> tuple[float, float]:
 
 
 def viscosities_in_field(
-    shear: float,
+    shear: Value,
     hall_ratio: float | str,
-    carriers: Carriers | None,
+    carriers: Carriers[Value] | None,
     magnetic_field: float,
     file: str | None = None,
-) -> tuple[float, float]:
+) -> tuple[Value, Value]:
     """Shear and Hall viscosity (kg/s) in a field (T) along +z, from the shear viscosity without.
 
     hall_ratio: η_H/η, meant with the sign of qB so that reciprocity holds, or "kinetic" for the
@@ -71,7 +70,7 @@ def viscosities_in_field(
     where the mass is not.
     """
     if magnetic_field == 0.0:
-        return shear, 0.0
+        return shear, 0.0 * shear
     if carriers is None:
         expected = (
             "a fluid given by sheet_resistance and gurzhi_length alone has no charge density; add "
@@ -79,11 +78,12 @@ def viscosities_in_field(
         )
         raise CaseError("magnetic_field", f"{magnetic_field:g} T", expected, file)
     if not isinstance(hall_ratio, str):
-        return shear, hall_ratio * shear * math.copysign(1.0, carriers.charge * magnetic_field)
+        turn = carriers.charge * magnetic_field
+        return shear, hall_ratio * shear * (turn / abs(turn))
     frequency = cyclotron_frequency(carriers, magnetic_field)
     if frequency is None or carriers.mass is None or carriers.fermi_velocity is None:
         expected = "needs the mass of the carriers; add mass (such as '0.03 m_e') or dirac_velocity"
         raise CaseError("fluid.hall_viscosity_ratio", hall_ratio, expected, file)
-    viscosity = shear / (carriers.density * carriers.mass)
+    viscosity = shear / carriers.mass_density
     relaxation = stress_relaxation_time(viscosity, carriers.fermi_velocity)
     return kinetic_viscosities(shear, 2.0 * frequency * relaxation)

@@ -6,6 +6,8 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
 
 from fluidev.fluid.coefficients import FluidCoefficients
+from fluidev.fluid.density.landscape import Density
+from fluidev.fluid.ratios import Ratios
 
 
 @dataclass(frozen=True)
@@ -15,11 +17,15 @@ class Fluid:
     kind: which way of describing it the case uses. coefficients: what the equations are weighted
     with, in the field of the case. numbers: SI values by the keys of ``fluid.numbers``, None where
     the case does not say enough to know one; mobilities and lengths are those at zero field.
+    density: None where the case gives none. Where it varies, coefficients and numbers are those at
+    its reference, and ratios are the local coefficients over them; None in a uniform fluid.
     """
 
     kind: str
     coefficients: FluidCoefficients
     numbers: Mapping[str, float | None] = field(repr=False)
+    density: Density | None = None
+    ratios: Ratios | None = field(default=None, repr=False)
 
 
 def ohmic(coefficients: FluidCoefficients) -> FluidCoefficients:

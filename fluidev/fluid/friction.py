@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Callable
 from typing import Annotated
 
@@ -16,7 +15,7 @@ from fluidev.case.units import (
     SheetResistance,
     parse_quantity,
 )
-from fluidev.fluid.carriers import Carriers
+from fluidev.fluid.carriers import Carriers, Value
 from fluidev.fluid.constants import ELEMENTARY_CHARGE
 
 NAMES = ("relaxation_time", "mobility", "momentum_mean_free_path", "sheet_resistance")
@@ -54,15 +53,16 @@ class FrictionKeys(Table):
     ) = None
 
 
-def friction_of(name: str, value: float, carriers: Carriers) -> float:
+def friction_of(name: str, value: float, carriers: Carriers[Value]) -> Value:
     """k in kg m⁻² s⁻¹ from the key that is given and its SI value; carriers with a mass.
 
     Formulas: k = n m/τ, with τ = µ m/e or τ = l_mr/v_F; k = ρ² R_sheet.
     """
-    assert carriers.mass is not None and carriers.fermi_velocity is not None
     if name == "sheet_resistance":
         return carriers.charge_density * carriers.charge_density * value
     if name == "mobility":
         return carriers.density * ELEMENTARY_CHARGE / value
-    time = value if name == "relaxation_time" else value / carriers.fermi_velocity
-    return 0.0 if math.isinf(time) else carriers.density * carriers.mass / time
+    if name == "relaxation_time":
+        return carriers.mass_density / value
+    assert carriers.fermi_velocity is not None
+    return carriers.mass_density * carriers.fermi_velocity / value

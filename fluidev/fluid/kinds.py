@@ -8,8 +8,9 @@ from fluidev.case.load import Case
 from fluidev.case.table import path, unknown_key, validate
 from fluidev.case.words import written
 from fluidev.errors import CaseError
-from fluidev.fluid.common import FluidKind
+from fluidev.fluid.density.registry import density_of
 from fluidev.fluid.fluid import Fluid
+from fluidev.fluid.kind import FluidKind
 from fluidev.fluid.microscopic import MICROSCOPIC
 from fluidev.fluid.two_numbers import TWO_NUMBERS
 
@@ -21,7 +22,12 @@ def fluid_of(case: Case) -> Fluid:
     kind = kind_of(case.fluid, case.name)
     keys = validate(kind.keys, case.fluid, "fluid", case.name)
     try:
-        return kind.fluid(keys, case.magnetic_field, case.name)
+        density = density_of(keys, case.device.unit_length, case.name)
+        return kind.fluid(keys, density, case.magnetic_field, case.name)
+    except CaseError as mistake:
+        name = mistake.key.removeprefix("fluid.")
+        value = mistake.value or written(case.fluid.get(name))  # as it stands in the file
+        raise CaseError(mistake.key, value, mistake.expected, case.name) from None
     except (OverflowError, ZeroDivisionError):
         expected = "these numbers leave the range of floating-point numbers"
         raise CaseError("fluid", None, expected, case.name) from None

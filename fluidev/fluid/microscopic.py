@@ -4,10 +4,12 @@ from __future__ import annotations
 
 from fluidev.case.units import KinematicViscosity, PositiveLength
 from fluidev.errors import CaseError
-from fluidev.fluid.carriers import carriers_of
-from fluidev.fluid.common import FluidKeys, FluidKind, fluid_with, one_of
+from fluidev.fluid.carriers import Carriers, Value, carriers_of
+from fluidev.fluid.density.landscape import Density
 from fluidev.fluid.fluid import Fluid
 from fluidev.fluid.friction import NAMES, FrictionKeys, friction_of
+from fluidev.fluid.kind import FluidKeys, FluidKind, fluid_with, one_of
+from fluidev.fluid.local import with_density
 
 
 class Microscopic(FluidKeys, FrictionKeys):
@@ -20,29 +22,33 @@ class Microscopic(FluidKeys, FrictionKeys):
     electron_mean_free_path: PositiveLength | None = None
 
 
-def fluid_of_carriers(keys: Microscopic, magnetic_field: float, file: str | None = None) -> Fluid:
-    """The fluid with η = n m ν and k = n m/τ. magnetic_field: T.
+def fluid_of_carriers(
+    keys: Microscopic, density: Density | None, magnetic_field: float, file: str | None = None
+) -> Fluid:
+    """The fluid with η = n m ν and k = n m/τ, at every density. magnetic_field: T.
 
     Formulas: ν = v_F l_ee/4 in two dimensions, from η = n m v_F² τ₂/4 with τ₂ = l_ee/v_F.
     Raises CaseError where the density, the mass, the viscosity or the friction is missing or said
     twice, and for numbers out of range.
     """
-    if keys.density is None:
+    if density is None:
         expected = "missing; expected a sheet density (such as '1.2e12 / cm^2')"
         raise CaseError("fluid.density", None, expected, file)
     one_of(keys, ("mass", "dirac_velocity"), "mass", file)
     said = one_of(keys, ("kinematic_viscosity", "electron_mean_free_path"), "viscosity", file)
     lost = one_of(keys, NAMES, "friction", file)
-    carriers = carriers_of(keys, file)
-    assert carriers is not None and carriers.mass and carriers.fermi_velocity
-    viscosity: float = getattr(keys, said)
-    if said == "electron_mean_free_path":
-        viscosity *= carriers.fermi_velocity / 4.0
-    friction = friction_of(lost, getattr(keys, lost), carriers)
-    mass_density = carriers.density * carriers.mass
-    return fluid_with(
-        MICROSCOPIC.name, keys, carriers, mass_density * viscosity, friction, magnetic_field, file
-    )
+
+    def law(carriers: Carriers[Value]) -> tuple[Value, Value]:
+        viscosity = getattr(keys, said)
+        if said == "electron_mean_free_path":
+            viscosity = viscosity * carriers.fermi_velocity / 4.0
+        return carriers.mass_density * viscosity, friction_of(lost, getattr(keys, lost), carriers)
+
+    carriers = carriers_of(keys, density.reference, file)
+    assert carriers is not None
+    shear, friction = law(carriers)
+    fluid = fluid_with(MICROSCOPIC.name, keys, carriers, shear, friction, magnetic_field, file)
+    return with_density(fluid, keys, density, law, file)
 
 
 MICROSCOPIC = FluidKind(

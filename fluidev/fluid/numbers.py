@@ -13,7 +13,9 @@ Numbers = dict[str, float | None]
 
 
 def numbers_of(
-    at_zero_field: FluidCoefficients, in_field: FluidCoefficients, carriers: Carriers | None
+    at_zero_field: FluidCoefficients,
+    in_field: FluidCoefficients,
+    carriers: Carriers[float] | None,
 ) -> Numbers:
     """The numbers of a fluid in SI units; None for what cannot be known without its carriers.
 
@@ -42,10 +44,12 @@ def _ratio(above: float, below: float) -> float:
     return above / below if below else math.inf
 
 
-def _carrier_numbers(carriers: Carriers | None) -> Numbers:
+def _carrier_numbers(carriers: Carriers[float] | None) -> Numbers:
     names = {
         "charge_coulomb": "charge",
         "density_per_m2": "density",
+        "density_min_per_m2": "density",
+        "density_max_per_m2": "density",
         "charge_density_C_per_m2": "charge_density",
         "degeneracy": "degeneracy",
         "fermi_wavevector_per_m": "fermi_wavevector",
@@ -56,7 +60,7 @@ def _carrier_numbers(carriers: Carriers | None) -> Numbers:
 
 
 def _transport_numbers(
-    c: FluidCoefficients, in_field: FluidCoefficients, carriers: Carriers | None
+    c: FluidCoefficients, in_field: FluidCoefficients, carriers: Carriers[float] | None
 ) -> Numbers:
     numbers: Numbers = dict.fromkeys(
         (

@@ -16,7 +16,8 @@ class Triangulation:
     """Triangles in mesh lengths, each the image of the Lagrange triangle of a given order.
 
     triangles: (nt, 3) vertex numbers. nodes: (nt, nn, 2) positions of the Lagrange nodes, vertices
-    first (nn is 3 for straight triangles of order 1, 15 for order 4). boundary: (nb, 2) vertex pairs on the boundary. stretch: (nb,) the stretch of each pair.
+    first (nn is 3 for straight triangles of order 1, 15 for order 4). boundary: (nb, 2) vertex
+    pairs on the boundary. stretch: (nb,) the stretch of each pair.
     count: number of vertices.
     """
 
@@ -38,7 +39,8 @@ def split_toward(mesh: Triangulation, members: np.ndarray, fraction: float) -> T
     """
     inside = members[mesh.triangles]
     number = inside.sum(axis=1)
-    one, two = number == 1, number == 2
+    one: np.ndarray = number == 1
+    two: np.ndarray = number == 2
     # Bring the triangles into the order (member, other, other) or (member, member, other).
     first = np.argmax(np.where(one[:, None], inside, ~inside), axis=1)
     turned_one = _rotated(mesh, one, first)
@@ -99,7 +101,9 @@ def separate(mesh: Triangulation, members: np.ndarray) -> Triangulation:
         flags = np.zeros(mesh.count, dtype=bool)
         flags[: len(members)] = members
         pairs = np.sort(mesh.triangles[:, _EDGES], axis=2)
-        inner = flags[pairs].all(axis=2) & ~_isin(pairs[..., 0] * len(members) + pairs[..., 1], outer)
+        inner = flags[pairs].all(axis=2) & ~_isin(
+            pairs[..., 0] * len(members) + pairs[..., 1], outer
+        )
         # One cut a triangle and pass: the edge with the largest key among its own and its
         # neighbours' candidates is surely free to be cut.
         codes = np.where(inner, pairs[..., 0] * mesh.count + pairs[..., 1] + 1, 0)
@@ -111,11 +115,36 @@ def separate(mesh: Triangulation, members: np.ndarray) -> Triangulation:
         mesh = _halve(mesh, chosen - 1)
 
 
+def fan_out(mesh: Triangulation, vertex: int, widest: float) -> Triangulation:
+    """The mesh with no angle at one vertex wider than `widest` (radian), if that can be had.
+
+    The inner edge opposite a wide angle is halved. A singular flow turns through the whole angle
+    at its point, and layers of wide triangles would follow that badly.
+    """
+    outer = np.sort(mesh.boundary.min(axis=1) * mesh.count + mesh.boundary.max(axis=1))
+    first_count = mesh.count
+    for _ in range(8):
+        touch, local = np.nonzero(mesh.triangles == vertex)
+        corner = mesh.nodes[touch, :3]
+        rows = np.arange(len(touch))
+        others = [(local + 1) % 3, (local + 2) % 3]
+        arms = [corner[rows, k] - corner[rows, local] for k in others]
+        turn = arms[0][:, 0] * arms[1][:, 1] - arms[0][:, 1] * arms[1][:, 0]
+        angle = np.abs(np.arctan2(turn, (arms[0] * arms[1]).sum(axis=1)))
+        pairs = np.sort(np.stack([mesh.triangles[touch, k] for k in others], axis=1), axis=1)
+        wide = (angle > widest) & ~_isin(pairs[:, 0] * first_count + pairs[:, 1], outer)
+        if not wide.any():
+            return mesh
+        worst = int(np.argmax(np.where(wide, angle, 0.0)))
+        mesh = _halve(mesh, np.array([pairs[worst, 0] * mesh.count + pairs[worst, 1]]))
+    return mesh
+
+
 def _halve(mesh: Triangulation, codes: np.ndarray) -> Triangulation:
     """Halve the inner edges a < b with the given codes a·count + b, at most one a triangle."""
     pairs = np.sort(mesh.triangles[:, _EDGES], axis=2)
     match = _isin(pairs[..., 0] * mesh.count + pairs[..., 1], np.sort(codes))
-    hit = match.any(axis=1)
+    hit = np.asarray(match.any(axis=1))
     local = np.argmax(match, axis=1)
     turned = _rotated(mesh, hit, np.array([0, 1, 2])[local])  # the edge is 01, 12 or 20
     t = turned.triangles
@@ -162,7 +191,7 @@ def _keep(mesh: Triangulation, mask: np.ndarray) -> tuple[np.ndarray, np.ndarray
 
 
 def reordered(nodes: np.ndarray, turn: np.ndarray, order: int) -> np.ndarray:
-    """Nodes (n, nn, 2) of triangles whose vertices are renumbered: new vertex i is old turn[:, i]."""
+    """Nodes (n, nn, 2) of triangles with vertices renumbered: new vertex i is old turn[:, i]."""
     index = LagrangeTriangle(order).index
     old = np.zeros((len(turn), *index.shape), dtype=np.int64)
     np.put_along_axis(old, np.broadcast_to(turn[:, None, :], old.shape), index[None], axis=2)

@@ -1,4 +1,4 @@
-"""The mesh of a device: triangles with exactly curved rims, and the stretch of every boundary edge."""
+"""The mesh of a device: triangles with curved rims, and the stretch of every boundary edge."""
 
 from __future__ import annotations
 
@@ -56,7 +56,7 @@ class DeviceMesh:
 
     @cached_property
     def skfem(self) -> MeshTri1:
-        """The mesh for assembly, vertices of each triangle in ascending order (needed from P3 on)."""
+        """The mesh for assembly; the vertices of each triangle ascend, as degrees above 2 need."""
         t = self.triangulation
         turn = np.argsort(t.triangles, axis=1)
         triangles = np.ascontiguousarray(np.take_along_axis(t.triangles, turn, axis=1).T)

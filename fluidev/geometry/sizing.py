@@ -7,6 +7,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from fluidev.geometry.corner_exponent import Side, corner_exponent
 from fluidev.geometry.device import Device, Stretch
 from fluidev.geometry.outline import Arc, Point, Segment
 
@@ -18,14 +19,13 @@ CORNER = math.radians(30)
 
 @dataclass(frozen=True)
 class SingularPoint:
-    """A boundary point where the stress is singular, or nearly so.
+    """A boundary point (m) where the flow is not smooth: the velocity goes like r to `exponent`.
 
-    strong: the stress is unbounded (contact end on a wall, inner corner); otherwise only a high
-    derivative is (outer corner between two walls).
+    Below 1 the stress is unbounded there; at 1 only a higher derivative is.
     """
 
     point: Point
-    strong: bool
+    exponent: float
 
 
 def sample_boundary(device: Device, spacing: float) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
@@ -55,9 +55,11 @@ def local_width(device: Device, points: np.ndarray, normals: np.ndarray) -> np.n
     width = np.full(len(points), math.inf)
     shortest = 1e-9 * float(np.ptp(points, axis=0).max())
     for stretch in (s for loop in device.loops for s in loop):
-        reach = (_to_arc if isinstance(stretch.curve, Arc) else _to_segment)(
-            stretch.curve, points, normals
-        )
+        curve = stretch.curve
+        if isinstance(curve, Arc):
+            reach = _to_arc(curve, points, normals)
+        else:
+            reach = _to_segment(curve, points, normals)
         width = np.minimum(width, np.where(reach > shortest, reach, math.inf))
     return width
 
@@ -95,20 +97,37 @@ def _to_arc(arc: Arc, points: np.ndarray, normals: np.ndarray) -> np.ndarray:
 
 
 def singular_points(device: Device) -> tuple[SingularPoint, ...]:
-    """The corners and contact ends of a device that the mesh is graded to.
+    """The corners, contact ends and changes of slip of a device that the mesh is graded to.
 
-    A contact with normal entry that meets a wall at a right angle or less is no singular point:
-    mirrored at the contact the wall goes straight on (or turns outward).
+    Where walls and contacts meet so that the flow goes on smoothly (a contact with normal entry
+    across the end of a channel, a wall that goes straight on) there is none.
     """
     found = []
     for loop in device.loops:
         for before, after in zip(loop, loop[1:] + loop[:1], strict=True):
             if len(loop) == 1:  # one closed contact or wall has no ends
                 continue
-            strength = _strength(device, before, after)
-            if strength is not None:
-                found.append(SingularPoint(after.curve.point(0.0), strength))
+            turn = _turn(before, after)
+            first, second = _held(device, before), _held(device, after)
+            if first == second and abs(turn) < STRAIGHT:
+                continue
+            # To rounding a right angle is one, and angles are few: the exponents are remembered.
+            angle = round(math.pi - turn, 9)
+            exponent = corner_exponent(first, second, angle)
+            smooth = exponent == 1.0 and not (first == second == "no slip")
+            if not smooth:
+                found.append(SingularPoint(after.curve.point(0.0), exponent))
     return tuple(found)
+
+
+def _held(device: Device, stretch: Stretch) -> Side:
+    """What holds the fluid along a stretch."""
+    if stretch.contact is not None:
+        return (
+            "normal entry" if device.contacts[stretch.contact].entry == "normal" else "free entry"
+        )
+    assert stretch.wall is not None
+    return "no slip" if device.walls[stretch.wall].slip_length == 0 else "slip"
 
 
 def sides(device: Device, contacts: bool = False) -> tuple[tuple[int, ...], ...]:
@@ -149,19 +168,3 @@ def _turn(before: Stretch, after: Stretch) -> float:
     """Angle (radian) by which the boundary turns between two stretches; > 0 at outer corners."""
     (ax, ay), (bx, by) = before.curve.tangent(1.0), after.curve.tangent(0.0)
     return math.atan2(ax * by - ay * bx, ax * bx + ay * by)
-
-
-def _strength(device: Device, before: Stretch, after: Stretch) -> bool | None:
-    """True for strong, False for mild, None for regular."""
-    turn = _turn(before, after)
-    same = (before.contact, before.wall) == (after.contact, after.wall)
-    if same and abs(turn) < STRAIGHT:
-        return None
-    if turn < -STRAIGHT:
-        return True
-    if before.contact is not None or after.contact is not None:
-        entries = [device.contacts[s.contact].entry for s in (before, after) if s.contact is not None]
-        return None if entries == ["normal"] and turn > 0.5 * math.pi - STRAIGHT else True
-    if abs(turn) < STRAIGHT:
-        return True  # the slip length changes
-    return False

@@ -1,4 +1,4 @@
-"""What every kind of fluid has in common: three optional keys, and the way to a Fluid."""
+"""What a kind of fluid is: its keys, how it is recognised, and the way to a Fluid."""
 
 from __future__ import annotations
 
@@ -11,6 +11,7 @@ from fluidev.case.units import Conductance, NonNegativeNumber
 from fluidev.errors import CaseError
 from fluidev.fluid.carriers import CarrierKeys, Carriers
 from fluidev.fluid.coefficients import FluidCoefficients
+from fluidev.fluid.density.landscape import Density
 from fluidev.fluid.field import HallRatio, viscosities_in_field
 from fluidev.fluid.fluid import Fluid
 from fluidev.fluid.numbers import check_range, numbers_of
@@ -29,20 +30,21 @@ class FluidKind:
     """A way of describing a fluid.
 
     keys: the model of its table. marks: the keys that say that it is meant. outline: how to write
-    one, in words. fluid: (keys, magnetic field in T, case file) -> Fluid, raising CaseError.
+    one, in words. fluid: (keys, their density or None, magnetic field in T, case file) -> Fluid,
+    raising CaseError.
     """
 
     name: str
-    keys: type[Table]
+    keys: type[FluidKeys]
     marks: frozenset[str]
     outline: str
-    fluid: Callable[[Any, float, str | None], Fluid]
+    fluid: Callable[[Any, Density | None, float, str | None], Fluid]
 
 
 def fluid_with(
     kind: str,
     keys: FluidKeys,
-    carriers: Carriers | None,
+    carriers: Carriers[float] | None,
     shear_viscosity: float,
     friction: float,
     magnetic_field: float,
@@ -82,5 +84,5 @@ def one_of(keys: Table, names: tuple[str, ...], what: str, file: str | None) -> 
     choice = f"{', '.join(names[:-1])} or {names[-1]}"
     if not given:
         raise CaseError("fluid", None, f"has no {what}; expected one of {choice}", file)
-    expected = f"{given[0]} says the {what} already; expected one of {choice}"
+    expected = f"{given[0]} says the {what} already; expected only one of {choice}"
     raise CaseError(f"fluid.{given[1]}", None, expected, file)

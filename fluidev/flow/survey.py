@@ -1,0 +1,228 @@
+"""How a fluid varies over a device: a quadtree of cells, each small enough to follow it.
+
+Nothing heavy is imported, since this also finds densities that cannot be used.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from fluidev.fluid.fluid import Fluid
+from fluidev.fluid.ratios import LocalRatios
+from fluidev.geometry.device import Device
+from fluidev.geometry.interior import boundary_points, interior
+
+if TYPE_CHECKING:
+    import shapely
+
+# Largest cells over the size of the device, those of a mesh that nothing else refines.
+COARSE = 0.2
+# Cells are halved at most so many times.
+DEEPEST = 9
+# More cells than this make a mesh that no machine of today solves in passing.
+MOST_CELLS = 8000
+# In a cell the density may change by this share of what it is (or of its range, if that is less)
+# if it were to go on as steeply as at its steepest, …
+SLOPE = 0.75
+# … and bend away from a straight line by this share.
+BEND = 0.1
+# A range below this share of the reference is none.
+FLAT = 1e-9
+
+_SIDE = 5  # sample points along the side of a cell
+_FIRST = 33  # and of the largest ones, so that nothing narrow is missed
+
+
+@dataclass(frozen=True)
+class Survey:
+    """A fluid over a device.
+
+    cells: (n, 3) x and y of the middle and size in m, of every cell smaller than the largest; they
+    cover what needs them. lowest, highest: the least and the largest charge density over the
+    reference, and lowest_at: (x, y) in m of the least. gurzhi, layer: the least Gurzhi length and the least thickness
+    √(η σ_Q)/|ρ| of the intrinsic layer over those of the reference. unresolved: a point (m) where
+    the density changes faster than the smallest cell can follow and nothing smooths it, or None.
+    """
+
+    cells: np.ndarray
+    lowest: float
+    highest: float
+    lowest_at: tuple[float, float]
+    gurzhi: float
+    layer: float
+    unresolved: tuple[float, float] | None
+
+
+@dataclass
+class _Extremes:
+    """What the survey has met so far."""
+
+    lowest: float = np.inf
+    highest: float = -np.inf
+    lowest_at: tuple[float, float] = (0.0, 0.0)
+    gurzhi: float = np.inf
+    layer: float = np.inf
+
+    def meet(self, points: np.ndarray, at: LocalRatios) -> None:
+        """Take in the ratios at points (2, n) that lie in the device."""
+        density = np.asarray(at.charge_density)
+        if not density.size:
+            return
+        least = int(np.argmin(density))
+        if density[least] < self.lowest:
+            self.lowest = float(density[least])
+            self.lowest_at = (float(points[0, least]), float(points[1, least]))
+        self.highest = max(self.highest, float(density.max()))
+        shear = np.asarray(at.shear_viscosity)
+        self.gurzhi = min(self.gurzhi, float(np.sqrt(np.min(shear / at.friction))))
+        size = np.maximum(np.abs(density), np.finfo(float).tiny)
+        self.layer = min(self.layer, float(np.min(np.sqrt(shear) / size)))
+
+
+def survey(device: Device, fluid: Fluid) -> Survey:
+    """The survey of a fluid whose density varies.
+
+    Raises CaseError where the density is no number.
+    """
+    import shapely
+
+    assert fluid.ratios is not None
+    region = interior(device)
+    x0, y0, x1, y1 = region.bounds
+    size = max(x1 - x0, y1 - y0)
+    met = _Extremes()
+    edge = boundary_points(device, size / 256)
+    met.meet(edge, fluid.ratios(edge))
+    cells = _largest_cells(x0, y0, x1, y1, COARSE * size)
+    kept, unresolved = [], None
+    for level in range(DEEPEST + 1):
+        cells = cells[shapely.intersects(region, _boxes(cells))]
+        if not len(cells) or len(cells) > MOST_CELLS:
+            break
+        rough = _rough(cells, fluid, region, met, _FIRST if level == 0 else _SIDE)
+        if level > 0:
+            kept.append(cells[~rough])
+        cells = cells[rough]
+        if level == DEEPEST and len(cells):
+            kept.append(cells)
+            unresolved = _middle(cells[0])
+        cells = _quarters(cells)
+    if len(cells) > MOST_CELLS:
+        kept.append(cells)
+        unresolved = _middle(cells[0])
+    found = np.concatenate(kept) if kept else np.zeros((0, 3))
+    return Survey(
+        found, met.lowest, met.highest, met.lowest_at, met.gurzhi, met.layer, unresolved
+    )
+
+
+def _rough(
+    cells: np.ndarray, fluid: Fluid, region: shapely.Polygon, met: _Extremes, side: int
+) -> np.ndarray:
+    """Which cells (n,) are too large for what happens in them."""
+    import shapely
+
+    share = np.linspace(-0.5, 0.5, side)
+    offset = cells[:, 2, None, None] * share
+    x, y, _ = cells.T[:, :, None, None]
+    x = np.broadcast_to(x + offset.transpose(0, 2, 1), (len(cells), side, side))
+    y = np.broadcast_to(y + offset, (len(cells), side, side))
+    points = np.stack([x, y])
+    inside = shapely.contains_xy(region, x, y)
+    at = _ratios_inside(fluid, points, inside)
+    met.meet(points[:, inside], _taken(at, inside))
+    density = np.where(inside, at.charge_density, np.nan)
+    span = met.highest - met.lowest
+    if span < FLAT:
+        return np.zeros(len(cells), dtype=bool)
+    slope, bend = _change(density)
+    viscosity = np.where(inside, at.shear_viscosity, np.nan)
+    here, momentum = _largest([density]), _largest([viscosity])
+    natural, smoothing = _natural(fluid, momentum, slope / cells[:, 2])
+    scale = np.minimum(span, here + natural)
+    rough = (slope > SLOPE * scale) | (bend > BEND * scale)
+    # Where intrinsic conduction smooths the flow a sharper density need not be followed, …
+    rough &= cells[:, 2] > smoothing / np.maximum(here, np.finfo(float).tiny)
+    # … unless the two sides of a line of few carriers drag each other across it.
+    slope, bend = _change(viscosity)
+    return np.asarray(rough | (slope > SLOPE * momentum) | (bend > BEND * momentum))
+
+
+def _change(values: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+    """How much values (n, s, s) change over each cell at their steepest, and bend in it."""
+    steps = values.shape[1] - 1
+    slope = _largest([np.diff(values, axis=1), np.diff(values, axis=2)]) * steps
+    mixed = np.diff(np.diff(values, axis=1), axis=2)
+    bend = _largest([np.diff(values, 2, axis=1), np.diff(values, 2, axis=2), mixed])
+    return slope, bend * steps**2 / 8.0
+
+
+def _natural(
+    fluid: Fluid, momentum: np.ndarray, slope: np.ndarray
+) -> tuple[np.ndarray, np.ndarray]:
+    """Two measures for each cell: a natural density, and a smoothing length times the density.
+
+    The first is the density (over the reference) below which the fluid's current is less than the
+    intrinsic one: ρ² = σ_Q (k + η/l²) with l = ρ/|∇ρ|. The second: √(η σ_Q)/ρ₀ in m. momentum: the
+    largest share of η and k in the cell; slope: |∇ρ|/ρ₀ in 1/m.
+    """
+    c = fluid.coefficients
+    sigma = c.intrinsic_conductivity / c.charge_density**2
+    drag = sigma * c.friction * momentum
+    shear = sigma * (c.shear_viscosity + c.bulk_viscosity) * momentum
+    square = 0.5 * (drag + np.sqrt(drag**2 + 4.0 * shear * slope**2))
+    return np.sqrt(square), np.sqrt(shear)
+
+
+def _ratios_inside(fluid: Fluid, points: np.ndarray, inside: np.ndarray) -> LocalRatios:
+    """Ratios at points (2, n, s, s), those of no meaning outside the device."""
+    assert fluid.ratios is not None
+    found = fluid.ratios(points[:, inside])
+    whole = {}
+    for name in ("charge_density", "shear_viscosity", "friction"):
+        whole[name] = np.ones(inside.shape)
+        whole[name][inside] = getattr(found, name)
+    return LocalRatios(**whole)
+
+
+def _taken(at: LocalRatios, inside: np.ndarray) -> LocalRatios:
+    return LocalRatios(
+        charge_density=np.asarray(at.charge_density)[inside],
+        shear_viscosity=np.asarray(at.shear_viscosity)[inside],
+        friction=np.asarray(at.friction)[inside],
+    )
+
+
+def _largest(parts: list[np.ndarray]) -> np.ndarray:
+    """Largest size (n,) of what is known in each cell, 0 where nothing is."""
+    sizes = [np.where(np.isnan(part), 0.0, np.abs(part)).max(axis=(1, 2)) for part in parts]
+    return np.max(sizes, axis=0)
+
+
+def _largest_cells(x0: float, y0: float, x1: float, y1: float, size: float) -> np.ndarray:
+    columns = max(1, int(np.ceil((x1 - x0) / size - 1e-9)))
+    rows = max(1, int(np.ceil((y1 - y0) / size - 1e-9)))
+    x = 0.5 * (x0 + x1) + size * (np.arange(columns) - 0.5 * (columns - 1))
+    y = 0.5 * (y0 + y1) + size * (np.arange(rows) - 0.5 * (rows - 1))
+    grid = np.array(np.meshgrid(x, y)).reshape(2, -1).T
+    return np.column_stack([grid, np.full(len(grid), size)])
+
+
+def _quarters(cells: np.ndarray) -> np.ndarray:
+    shift = 0.25 * np.array([[-1, -1, 0], [1, -1, 0], [-1, 1, 0], [1, 1, 0]])
+    quarters = cells[:, None, :] * np.array([1.0, 1.0, 0.5]) + cells[:, None, 2:] * shift
+    return quarters.reshape(-1, 3)
+
+
+def _boxes(cells: np.ndarray) -> np.ndarray:
+    import shapely
+
+    x, y, size = cells.T
+    return shapely.box(x - 0.5 * size, y - 0.5 * size, x + 0.5 * size, y + 0.5 * size)
+
+
+def _middle(cell: np.ndarray) -> tuple[float, float]:
+    return float(cell[0]), float(cell[1])
