@@ -52,6 +52,8 @@ def run(given: argparse.Namespace) -> int:
         print(text, end="")
     else:
         print(f"{table_of(flow)}\n{regime.verdict}: {regime.reason}")
+        if flow.shortfall is not None:
+            print(flow.shortfall)
     return 0
 
 
@@ -77,6 +79,7 @@ def results_of(flow: Flow, regime: Regime) -> dict[str, Any]:
         "fluid": _finite_values(flow.fluid.numbers),
         "regime": regime.to_json(),
         "mesh": {"elements": int(flow.mesh.elements), "unknowns": int(flow.unknowns)},
+        "tolerance_shortfall": flow.shortfall,
         "case_sha256": flow.case.text_sha256,
         "version": __version__,
     }

@@ -18,7 +18,8 @@ class ContactTrace:
     """What a contact sees of the unknowns at its quadrature points (nq of them).
 
     current: (nq, nf) ρ/ρ₀ ũ·n; cross: (nq, nf) (ũ×z)·n; slope, value: (nq, np) ∂φ/∂n and φ;
-    weight: (nq,) edge lengths; penalty: (nq,) γ/h; intrinsic: (nq,) ratio of σ_Q.
+    weight: (nq,) edge lengths; penalty: (nq,) γ/h; intrinsic: (nq,) ratio of σ_Q; elements: (nq,)
+    the triangle of each point.
     """
 
     current: sp.csr_array
@@ -28,6 +29,7 @@ class ContactTrace:
     weight: np.ndarray
     penalty: np.ndarray
     intrinsic: np.ndarray
+    elements: np.ndarray
 
 
 def contact_trace(
@@ -58,6 +60,7 @@ def contact_trace(
         edges.dx.ravel(),
         np.repeat(penalty, edges.dx.shape[1]),
         np.broadcast_to(at.intrinsic_conductivity, edges.dx.shape).ravel().astype(float),
+        np.repeat(edges.elements, edges.dx.shape[1]),
     )
 
 

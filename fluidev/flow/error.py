@@ -17,7 +17,7 @@ import numpy as np
 
 from fluidev.flow.blocks import Blocks
 from fluidev.flow.flow import FlowSolution
-from fluidev.flow.system import boundary_terms, element_matrices, mirrored_states
+from fluidev.flow.system import boundary_terms, element_matrices
 from fluidev.geometry.lagrange import LagrangeTriangle
 
 # The bar of a reading: this multiple of its estimated error, plus the elements' shares added in
@@ -29,8 +29,8 @@ _SIGNED = 2.0
 class ErrorShares:
     """Shares of the error of the conductance matrix, in S.
 
-    elements: (ne, N, N), each element's share of G_fine − G. boundary: (N, N), the share of the
-    contact and wall terms.
+    elements: (ne, N, N), each element's share of G_fine − G. boundary: (N, N), the share of wall
+    slip and of the intrinsic terms at contacts.
     """
 
     elements: np.ndarray = field(repr=False)
@@ -41,9 +41,13 @@ class ErrorShares:
         """G_fine − G, (N, N) in S."""
         return np.asarray(self.elements.sum(axis=0) + self.boundary)
 
+    def of(self, left: np.ndarray, right: np.ndarray) -> np.ndarray:
+        """Share (ne,) of each element in the error of leftᵀ G right."""
+        return np.asarray(np.einsum("i,eij,j->e", left, self.elements, right, optimize=True))
+
     def bar(self, left: np.ndarray, right: np.ndarray) -> float:
         """Error bar of leftᵀ G right: for a resistance, the potentials of its two unit currents."""
-        shares = np.einsum("i,eij,j->e", left, self.elements, right, optimize=True)
+        shares = self.of(left, right)
         edge = float(left @ self.boundary @ right)
         signed = abs(float(shares.sum()) + edge)
         return _SIGNED * signed + math.sqrt(float((shares**2).sum()) + edge**2)
@@ -57,13 +61,26 @@ def error_shares(coarse: FlowSolution, fine: FlowSolution) -> ErrorShares:
     if weights.field or weights.hall:
         left_full, left_free = _gain(
             coarse.blocks,
-            mirrored_states(coarse.blocks, coarse.solution),
+            coarse.solution.mirrored,
             fine.blocks,
-            mirrored_states(fine.blocks, fine.solution),
+            fine.solution.mirrored,
         )
     local = element_matrices(fine.blocks, weights)
     elements = np.matmul(left_full.transpose(0, 2, 1), np.matmul(local, right_full))
     edge = left_free.T @ (boundary_terms(fine.blocks, weights, fine.solution.forms) @ right_free)
+    split = fine.blocks.velocities
+    for trace in fine.blocks.contacts:
+        # The step of the potential at a contact belongs to the triangles behind it.
+        (left_current, right_current), (left_value, right_value) = (
+            (trace.current @ left_free[:split], trace.current @ right_free[:split]),
+            (trace.value @ left_free[split:], trace.value @ right_free[split:]),
+        )
+        step = -trace.weight[:, None, None] * (
+            left_current[:, :, None] * right_value[:, None, :]
+            + left_value[:, :, None] * right_current[:, None, :]
+        )
+        np.add.at(elements, trace.elements, step)
+        edge -= step.sum(axis=0)
     return ErrorShares(elements / weights.unit, edge / weights.unit)
 
 

@@ -10,9 +10,9 @@ from fluidev.errors import NumericsError
 from fluidev.flow.parts import Parts
 from fluidev.flow.survey import Survey
 from fluidev.fluid.coefficients import FluidCoefficients
-from fluidev.geometry.drawing import Sources
 from fluidev.geometry.mesh import DeviceMesh
 from fluidev.geometry.meshing import MeshSettings, mesh_device, mesh_frame
+from fluidev.geometry.sources import Sources
 
 # Size of the elements over that of the survey's cells. With this much, fourth-order velocities give
 # the resistance of one-dimensional density profiles of any shape to 2e-5 or better.
@@ -27,15 +27,21 @@ def layer_lengths(coefficients: FluidCoefficients) -> tuple[float, float]:
     return gurzhi, layer or math.inf
 
 
-def mesh_of(parts: Parts, settings: MeshSettings = MeshSettings()) -> DeviceMesh:
+def mesh_of(
+    parts: Parts,
+    settings: MeshSettings = MeshSettings(),
+    extra: Sources | None = None,
+    sharper: tuple[int, ...] = (),
+) -> DeviceMesh:
     """The mesh for the device and the fluid of a case.
 
+    extra, sharper: finer places, as in geometry.meshing.mesh_device.
     Raises NumericsError where the density changes within less than any mesh can follow.
     """
     gurzhi, layer = layer_lengths(parts.fluid.coefficients)
     found = parts.survey
     if found is None:
-        return mesh_device(parts.device, gurzhi, layer, settings)
+        return mesh_device(parts.device, gurzhi, layer, settings, extra, sharper)
     if found.unresolved is not None:
         x, y = (1e6 * coordinate for coordinate in found.unresolved)
         smallest = float(found.cells[:, 2].min())
@@ -44,8 +50,10 @@ def mesh_of(parts: Parts, settings: MeshSettings = MeshSettings()) -> DeviceMesh
             "µm, or in too many places at once: the mesh cannot follow; give its edges more width, "
             "or the puddles a larger spacer"
         )
-    extra = _sources(parts, found)
-    return mesh_device(parts.device, gurzhi * found.gurzhi, layer * found.layer, settings, extra)
+    extra = _together(_sources(parts, found), extra)
+    return mesh_device(
+        parts.device, gurzhi * found.gurzhi, layer * found.layer, settings, extra, sharper
+    )
 
 
 def _sources(parts: Parts, found: Survey) -> Sources | None:
@@ -54,3 +62,11 @@ def _sources(parts: Parts, found: Survey) -> Sources | None:
     scale, origin = mesh_frame(parts.device)
     sizes = PER_CELL * found.cells[:, 2] / scale
     return Sources((found.cells[:, :2] - np.asarray(origin)) / scale, sizes)
+
+
+def _together(first: Sources | None, second: Sources | None) -> Sources | None:
+    if first is None or second is None:
+        return first or second
+    return Sources(
+        np.concatenate([first.points, second.points]), np.concatenate([first.sizes, second.sizes])
+    )

@@ -9,12 +9,13 @@ from functools import cached_property
 import numpy as np
 
 from fluidev.case.load import Case
+from fluidev.flow.adapt import adapt
 from fluidev.flow.blocks import assemble
 from fluidev.flow.error import ErrorShares, error_shares
 from fluidev.flow.flow import Estimate, FlowSolution, contact_potentials, four_terminal
 from fluidev.flow.meshes import layer_lengths, mesh_of
 from fluidev.flow.ohmic import ohmic_conductance
-from fluidev.flow.parts import parts_of
+from fluidev.flow.parts import Parts, parts_of
 from fluidev.flow.rigid import refuse_rigid_motion
 from fluidev.flow.space import FlowSpace
 from fluidev.flow.system import solve
@@ -62,6 +63,7 @@ class Flow:
 
     solution: the flow of the default mesh. shares: where its discretisation error sits.
     ohmic_conductance: the conductance matrix without viscosity, or None without friction.
+    shortfall: what to say where the tolerance of the case was not met, or None.
     """
 
     case: Case
@@ -69,6 +71,7 @@ class Flow:
     solution: FlowSolution = field(repr=False)
     shares: ErrorShares = field(repr=False)
     ohmic_conductance: np.ndarray | None = field(repr=False)
+    shortfall: str | None = None
 
     @property
     def contacts(self) -> tuple[str, ...]:
@@ -170,19 +173,55 @@ def solve_device(
 
 
 def solve_case(case: Case) -> Flow:
-    """The solved flow of a case, with an error on every reading and the ohmic values beside it."""
+    """The solved flow of a case, with an error on every reading and the ohmic values beside it.
+
+    Where the case names a tolerance the mesh is refined until every reading meets it; what was
+    reached where that could not be is in Flow.shortfall.
+    """
     parts = parts_of(case)
-    device, fluid = parts.device, parts.fluid
-    coefficients, ratios = fluid.coefficients, fluid.ratios
-    with progress("meshing"):
+    fluid = parts.fluid
+    shortfall = None
+    with progress("meshing") as step:
         mesh = mesh_of(parts)
+        step.say("solving")
+        if case.tolerance is None or not case.readings:
+            solution, shares = _solve_twice(parts, mesh)
+        else:
+            names = [contact.name for contact in parts.device.contacts]
+            readings = [
+                (
+                    (names.index(r.current[0]), names.index(r.current[1])),
+                    (names.index(r.voltage[0]), names.index(r.voltage[1])),
+                )
+                for r in case.readings
+            ]
+            found = adapt(
+                lambda extra, sharper: (
+                    mesh if extra is None else mesh_of(parts, extra=extra, sharper=sharper)
+                ),
+                lambda finer: _solve_twice(parts, finer),
+                readings,
+                case.tolerance,
+                say=step.say,
+            )
+            solution, shares = found.solution, found.shares
+            if found.reason is not None:
+                shortfall = (
+                    f"the tolerance {case.tolerance:g} was not met: the largest error is "
+                    f"{found.worst:.2g} times what it allows, and {found.reason}"
+                )
+        ohmic = ohmic_conductance(solution.blocks.space, fluid.coefficients, fluid.ratios)
+    return Flow(case, fluid, solution, shares, ohmic, shortfall)
+
+
+def _solve_twice(parts: Parts, mesh: DeviceMesh) -> tuple[FlowSolution, ErrorShares]:
+    """The solution on a mesh and the shares of its error, from one of the next degree."""
+    coefficients, ratios = parts.fluid.coefficients, parts.fluid.ratios
     assert mesh.skfem.t.size  # made once, before two threads ask for it
-    with progress("solving"), ThreadPoolExecutor(2) as pool:
+    with ThreadPoolExecutor(2) as pool:
         # The factorisations release the interpreter, so the finer solve costs little time.
         finer = pool.submit(
-            solve_device, device, coefficients, DEGREE + 1, mesh=mesh, ratios=ratios
+            solve_device, parts.device, coefficients, DEGREE + 1, mesh=mesh, ratios=ratios
         )
-        solution = solve_device(device, coefficients, mesh=mesh, ratios=ratios)
-        ohmic = ohmic_conductance(solution.blocks.space, coefficients, ratios)
-        shares = error_shares(solution, finer.result())
-    return Flow(case, fluid, solution, shares, ohmic)
+        solution = solve_device(parts.device, coefficients, mesh=mesh, ratios=ratios)
+        return solution, error_shares(solution, finer.result())

@@ -29,6 +29,9 @@ MOST_CELLS = 8000
 SLOPE = 0.75
 # … and bend away from a straight line by this share.
 BEND = 0.1
+# The same for the viscosity, which only matters where it has a deep minimum.
+DRAG_SLOPE = 1.2
+DRAG_BEND = 0.4
 # A range below this share of the reference is none.
 FLAT = 1e-9
 
@@ -114,9 +117,7 @@ def survey(device: Device, fluid: Fluid) -> Survey:
         kept.append(cells)
         unresolved = _middle(cells[0])
     found = np.concatenate(kept) if kept else np.zeros((0, 3))
-    return Survey(
-        found, met.lowest, met.highest, met.lowest_at, met.gurzhi, met.layer, unresolved
-    )
+    return Survey(found, met.lowest, met.highest, met.lowest_at, met.gurzhi, met.layer, unresolved)
 
 
 def _rough(
@@ -148,7 +149,7 @@ def _rough(
     rough &= cells[:, 2] > smoothing / np.maximum(here, np.finfo(float).tiny)
     # … unless the two sides of a line of few carriers drag each other across it.
     slope, bend = _change(viscosity)
-    return np.asarray(rough | (slope > SLOPE * momentum) | (bend > BEND * momentum))
+    return np.asarray(rough | (slope > DRAG_SLOPE * momentum) | (bend > DRAG_BEND * momentum))
 
 
 def _change(values: np.ndarray) -> tuple[np.ndarray, np.ndarray]:

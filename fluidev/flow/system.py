@@ -155,13 +155,15 @@ class Solution:
     """The flows for 1 V on each contact in turn, the others at 0 V.
 
     conductance: (N, N) in S, currents into the device. states: (nf + np, N) free unknowns in the
-    scaled form of the blocks. forms and system: what they were computed with.
+    scaled form of the blocks. mirrored: (nf + np, N), the flows in the reversed field, which are
+    the adjoints of the readings: K(B)ᵀ = K(−B), and the currents of one are the loads of the other.
+    forms: the contact terms. The factors are not kept: they are the larger part of the memory.
     """
 
     conductance: np.ndarray
     states: np.ndarray
+    mirrored: np.ndarray
     forms: tuple[ContactForm, ...]
-    system: Condensed
 
 
 def solve(blocks: Blocks, weights: Weights) -> Solution:
@@ -178,20 +180,15 @@ def solve(blocks: Blocks, weights: Weights) -> Solution:
     system = condense(blocks, weights, forms)
     loads = np.stack([form.load for form in forms], axis=1)
     states = _completed(system.solve(loads[:, :-1]), blocks.velocities)
-    conductance = np.stack([form.current for form in forms], axis=1).T @ states
+    currents = np.stack([form.current for form in forms], axis=1)
+    conductance = currents.T @ states
     np.fill_diagonal(conductance, 0.0)
     np.fill_diagonal(conductance, -conductance.sum(axis=0))
-    return Solution(conductance / weights.unit, states, forms, system)
-
-
-def mirrored_states(blocks: Blocks, solution: Solution) -> np.ndarray:
-    """The flows (nf + np, N) in the reversed field, from the factors of this one.
-
-    They are the adjoints of the readings: K(B)ᵀ = K(−B), and the currents of one are the loads of
-    the other.
-    """
-    loads = np.stack([form.current for form in solution.forms], axis=1)
-    return _completed(solution.system.solve(loads[:, :-1], transposed=True), blocks.velocities)
+    mirrored = states
+    if weights.field or weights.hall:
+        driven = system.solve(currents[:, :-1], transposed=True)
+        mirrored = _completed(driven, blocks.velocities)
+    return Solution(conductance / weights.unit, states, mirrored, forms)
 
 
 def _completed(driven: np.ndarray, velocities: int) -> np.ndarray:

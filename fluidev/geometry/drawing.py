@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
@@ -14,22 +13,12 @@ from fluidev.geometry.lagrange import LagrangeTriangle
 from fluidev.geometry.layers import Triangulation
 from fluidev.geometry.mesh import CurvedTriangles
 from fluidev.geometry.outline import Arc, Point, Segment
+from fluidev.geometry.sources import Sources
 
 GMSH_HELP = (
     "gmsh cannot be loaded: on Debian install its system libraries with "
     "'apt-get install libglu1-mesa libgl1 libxcursor1 libxft2 libxinerama1 libgomp1'"
 )
-
-
-@dataclass(frozen=True)
-class Sources:
-    """Wanted element sizes at points: (n, 2) and (n,), in mesh lengths.
-
-    The size elsewhere is the least of size + growth · distance.
-    """
-
-    points: np.ndarray
-    sizes: np.ndarray
 
 
 def first_mesh(

@@ -123,7 +123,7 @@ def fan_out(mesh: Triangulation, vertex: int, widest: float) -> Triangulation:
     """
     outer = np.sort(mesh.boundary.min(axis=1) * mesh.count + mesh.boundary.max(axis=1))
     first_count = mesh.count
-    for _ in range(8):
+    for _ in range(64):
         touch, local = np.nonzero(mesh.triangles == vertex)
         corner = mesh.nodes[touch, :3]
         rows = np.arange(len(touch))

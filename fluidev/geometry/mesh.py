@@ -11,6 +11,7 @@ from skfem import MeshTri1
 from fluidev.geometry.device import Device, Stretch
 from fluidev.geometry.lagrange import LagrangeTriangle, QuarticTriangle
 from fluidev.geometry.layers import Triangulation, reordered
+from fluidev.geometry.sources import SizeField
 
 
 @dataclass(repr=False)
@@ -38,6 +39,7 @@ class DeviceMesh:
     triangulation: Triangulation
     scale: float
     origin: np.ndarray = field(repr=False)
+    sizes: SizeField = field(repr=False)
 
     @property
     def elements(self) -> int:

@@ -8,11 +8,12 @@ from dataclasses import dataclass
 import numpy as np
 
 from fluidev.geometry.device import Device
-from fluidev.geometry.drawing import Sources, first_mesh
+from fluidev.geometry.drawing import first_mesh
 from fluidev.geometry.layers import Triangulation, fan_out, separate, split_toward
 from fluidev.geometry.mesh import DeviceMesh
 from fluidev.geometry.outline import Arc
 from fluidev.geometry.sizing import corners, local_width, sample_boundary, sides, singular_points
+from fluidev.geometry.sources import SizeField, Sources
 
 
 @dataclass(frozen=True)
@@ -54,11 +55,13 @@ def mesh_device(
     contact_layer: float = math.inf,
     settings: MeshSettings = MeshSettings(),
     extra: Sources | None = None,
+    sharper: tuple[int, ...] = (),
 ) -> DeviceMesh:
     """The mesh of a device, graded to corners, walls and contact layers.
 
     gurzhi_length: D in m; walls get layers down to it. contact_layer: thickness √(η σ_Q)/|ρ| in m
-    of the intrinsic layer at contacts. extra: further size sources, in mesh lengths.
+    of the intrinsic layer at contacts. extra: further size sources, in mesh lengths. sharper: for
+    each of singular_points(device), how often the layers round it are made twice as fine.
     Raises NumericsError where gmsh is missing or fails.
     """
     scale, origin = mesh_frame(device)
@@ -68,11 +71,11 @@ def mesh_device(
             np.concatenate([sources.points, extra.points]),
             np.concatenate([sources.sizes, extra.sizes]),
         )
-    plain = first_mesh(device, scale, origin, sources, settings.growth / settings.refine)
-    layered = _add_layers(
-        plain, device, scale, origin, gurzhi_length / scale, contact_layer / scale, settings
-    )
-    return DeviceMesh(device, layered, scale, origin)
+    growth = settings.growth / settings.refine
+    plain = first_mesh(device, scale, origin, sources, growth)
+    gurzhi, layer = gurzhi_length / scale, contact_layer / scale
+    layered = _add_layers(plain, device, scale, origin, gurzhi, layer, settings, sharper)
+    return DeviceMesh(device, layered, scale, origin, SizeField(sources, growth))
 
 
 def mesh_frame(device: Device) -> tuple[float, np.ndarray]:
@@ -126,6 +129,7 @@ def _add_layers(
     gurzhi: float,
     contact_layer: float,
     settings: MeshSettings,
+    sharper: tuple[int, ...],
 ) -> Triangulation:
     """Layers round corners, then along walls, then in the metal's thin intrinsic layer.
 
@@ -134,24 +138,30 @@ def _add_layers(
     """
     stretches = [s for loop in device.loops for s in loop]
     thickness = settings.wall_layers_to * gurzhi / settings.refine
-    layers = {c.point: _corner_layers(c.exponent, settings) for c in singular_points(device)}
-    for point in (*layers, *(c for c in corners(device) if c not in layers)):
+    singular = singular_points(device)
+    levels = dict(zip((c.point for c in singular), sharper, strict=False))
+    exponents = {c.point: c.exponent for c in singular}
+    for point in (*exponents, *(c for c in corners(device) if c not in exponents)):
         vertices = np.empty((mesh.count, 2))
         vertices[mesh.triangles.ravel()] = mesh.nodes[:, :3].reshape(-1, 2)
         at = (np.array(point) - origin) / scale
         vertex = int(np.argmin(np.hypot(*(vertices - at).T)))
-        if layers.get(point, 0) > 1:
-            mesh = fan_out(mesh, vertex, math.radians(settings.widest))
+        halvings = 2.0 ** levels.get(point, 0)
+        ratio = settings.corner_ratio ** (1.0 / halvings)
+        wanted = 0
+        if point in exponents:
+            wanted = _corner_layers(exponents[point], ratio, settings)
+        if wanted > 1:
+            mesh = fan_out(mesh, vertex, math.radians(settings.widest / halvings))
         member = np.zeros(mesh.count, dtype=bool)
         member[vertex] = True
-        wanted = layers.get(point, 0)
         if math.isfinite(thickness) and point in corners(device):
             size = _depth(mesh, member, 1)
             if size > thickness:
-                needed = math.ceil(math.log(thickness / size) / math.log(settings.corner_ratio))
+                needed = math.ceil(math.log(thickness / size) / math.log(ratio))
                 wanted = max(wanted, min(needed, settings.most_layers))
         for _ in range(wanted):
-            mesh = split_toward(mesh, _extended(member, mesh.count), settings.corner_ratio)
+            mesh = split_toward(mesh, _extended(member, mesh.count), ratio)
     for side in sides(device):
         walls = [w for w in (stretches[i].wall for i in side) if w is not None]
         if len(walls) == len(side) and all(math.isinf(device.walls[w].slip_length) for w in walls):
@@ -164,14 +174,16 @@ def _add_layers(
     return mesh
 
 
-def _corner_layers(exponent: float, settings: MeshSettings) -> int:
-    """Layers round a point where the energy within r goes like r^(2·exponent)."""
+def _corner_layers(exponent: float, ratio: float, settings: MeshSettings) -> int:
+    """Layers of a ratio round a point where the energy within r goes like r^(2·exponent)."""
     if settings.corner_remainder >= 1.0:
         return 0
     if exponent >= 1.0:
         return 1
-    needed = math.log(settings.corner_remainder) / (2 * exponent * math.log(settings.corner_ratio))
-    return min(math.ceil(needed), settings.most_corner_layers)
+    needed = math.log(settings.corner_remainder) / (2 * exponent * math.log(ratio))
+    # Never so many that the innermost triangles are lost in rounding.
+    smallest = math.log(settings.corner_ratio) / math.log(ratio) * settings.most_corner_layers
+    return min(math.ceil(needed), round(smallest))
 
 
 def _boundary_layers(
@@ -181,7 +193,10 @@ def _boundary_layers(
     ratio: float,
     settings: MeshSettings,
 ) -> Triangulation:
-    """Layers along one side until the thinnest is below `thickness` (mesh lengths)."""
+    """Layers along one side until the thinnest is below `thickness` (mesh lengths).
+
+    Only where the side's triangles are still too deep: those near a corner have long been thin.
+    """
     if math.isinf(thickness):
         return mesh
     member = np.zeros(mesh.count, dtype=bool)
@@ -192,18 +207,27 @@ def _boundary_layers(
     mesh = separate(mesh, member)
     wanted = math.ceil(math.log(thickness / depth) / math.log(ratio))
     for _ in range(min(wanted, settings.most_layers)):
-        mesh = split_toward(mesh, _extended(member, mesh.count), ratio)
+        member = _extended(member, mesh.count)
+        touch, depths = _depths(mesh, member, 2)
+        deep = np.zeros(mesh.count, dtype=bool)
+        deep[mesh.triangles[touch[depths > thickness]].ravel()] = True
+        mesh = split_toward(mesh, member & deep, ratio)
     return mesh
 
 
 def _depth(mesh: Triangulation, member: np.ndarray, least: int) -> float:
     """Largest height of the triangles with at least that many vertices among the members."""
-    touch = member[mesh.triangles].sum(axis=1) >= least
+    return float(_depths(mesh, member, least)[1].max())
+
+
+def _depths(mesh: Triangulation, member: np.ndarray, least: int) -> tuple[np.ndarray, np.ndarray]:
+    """Triangles with at least that many vertices among the members, and their heights."""
+    touch = np.flatnonzero(member[mesh.triangles].sum(axis=1) >= least)
     corner = mesh.nodes[touch, :3]
     length = np.hypot(*(np.roll(corner, -1, axis=1) - corner).transpose(2, 0, 1))
     first, second = corner[:, 1] - corner[:, 0], corner[:, 2] - corner[:, 0]
     area = 0.5 * np.abs(first[:, 0] * second[:, 1] - first[:, 1] * second[:, 0])
-    return float((2 * area / length.max(axis=1)).max())
+    return touch, 2 * area / length.max(axis=1)
 
 
 def _extended(member: np.ndarray, count: int) -> np.ndarray:

@@ -3,10 +3,9 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass, field
 from datetime import date
 from pathlib import Path
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 import numpy as np
 
@@ -15,6 +14,7 @@ from fluidev.case.display import plain, with_prefix
 from fluidev.geometry.build import build_device
 from fluidev.geometry.device import Device
 from fluidev.lab.chart import Chart
+from fluidev.lab.chart_sheet import LETTER, TONES, Sheet, box_round
 from fluidev.readout import style
 from fluidev.readout.labels import curve_points, loop_points
 from fluidev.readout.provenance import put_in_place
@@ -33,66 +33,7 @@ if TYPE_CHECKING:
 DOTS = 200  # per inch
 # Paper, and the axes on it: left, bottom, width, height; in inches.
 _PAPER, _AXES = (7.4, 6.3), (0.85, 1.17, 6.3, 4.2)
-# Light tones that differ in brightness too, so that no eye and no printer takes one for another.
-TONES = {
-    "ohmic": "#f6d9a0",
-    "crossover": "#edeff2",
-    "viscous": "#86bde0",
-    "not a fluid": "#c9a9b8",
-    "not known": "#ffffff",
-}
 _LEVELS = (0.01, 0.02, 0.05, 0.1, 0.2, 0.5, 1.0, 2.0, 5.0, 10.0, 20.0, 50.0)
-_LETTER = 0.6  # mean width of a letter over the size of its type
-
-
-@dataclass
-class Sheet:
-    """The axes of a chart while texts find their places.
-
-    taken: boxes (left, bottom, right, top) that texts have, in inches from the corner of the axes.
-    """
-
-    figure: Figure
-    axes: Axes
-    chart: Chart
-    density_unit: float
-    taken: list[tuple[float, float, float, float]] = field(default_factory=list)
-
-    def inches(self, temperature: Any, density: Any) -> np.ndarray:
-        """Place(s) in inches from the corner of the axes, (..., 2)."""
-        chart, places = self.chart, []
-        for value, axis, size in (
-            (temperature, chart.temperature, _AXES[2]),
-            (density, chart.density, _AXES[3]),
-        ):
-            places.append(size * np.log(np.asarray(value) / axis[0]) / np.log(axis[-1] / axis[0]))
-        return np.stack(places, axis=-1)
-
-    def clear(self, box: tuple[float, float, float, float], margin: float = 0.06) -> bool:
-        """Whether a box lies within the axes and on no text."""
-        left, bottom, right, top = box
-        if min(left, bottom) < margin or right > _AXES[2] - margin or top > _AXES[3] - margin:
-            return False
-        return all(
-            right < l - margin or left > r + margin or top < b - margin or bottom > t + margin
-            for l, b, r, t in self.taken
-        )
-
-    def write(self, place: Any, text: str, **kind: Any) -> None:
-        """Write a text centred at a place in inches, clear of the lines beneath."""
-        from matplotlib.patheffects import withStroke
-
-        verdicts = self.chart.verdicts
-        row, column = (
-            min(max(round(place[i] / _AXES[2 + i] * (size - 1)), 0), size - 1)
-            for i, size in ((1, len(verdicts)), (0, verdicts.shape[1]))
-        )
-        tone = TONES[VERDICTS[verdicts[row, column]]]
-        self.axes.text(
-            place[0] / _AXES[2], place[1] / _AXES[3], text, transform=self.axes.transAxes,
-            ha="center", va="center", path_effects=[withStroke(linewidth=3.5, foreground=tone)],
-            **kind,
-        )  # fmt: skip
 
 
 def write_chart(chart: Chart, target: Path) -> None:
@@ -120,7 +61,7 @@ def chart_picture(chart: Chart) -> Figure:
     _paint(behind, chart)
     axes = figure.add_axes(box, facecolor="none")
     unit = 10.0 ** math.floor(math.log10(chart.point.density * 1e-4) + 1e-9) * 1e4
-    sheet = Sheet(figure, axes, chart, unit)
+    sheet = Sheet(figure, axes, chart, (width, height), unit)
     _dress(sheet)
     _mark_point(sheet)
     _name_regions(sheet)
@@ -167,29 +108,40 @@ def _dress(sheet: Sheet) -> None:
 
 def _mark_point(sheet: Sheet) -> None:
     """The operating point with its temperature, density and verdict."""
-    point, axes = sheet.chart.point, sheet.axes
-    place = sheet.inches(point.temperature, point.density)
-    if not (0.0 <= place[0] <= _AXES[2] and 0.0 <= place[1] <= _AXES[3]):
+    point = sheet.chart.point
+    x, y = sheet.inches(point.temperature, point.density).tolist()
+    if not (0.0 <= x <= sheet.size[0] and 0.0 <= y <= sheet.size[1]):
         return
-    axes.plot(point.temperature, point.density / sheet.density_unit, marker="o", markersize=9,
-              markerfacecolor=style.CURRENT_IN, markeredgecolor=style.PAPER, markeredgewidth=1.6,
-              zorder=8, clip_on=False)  # fmt: skip
-    x, y = place
-    sheet.taken.append((x - 0.1, y - 0.1, x + 0.1, y + 0.1))
+    sheet.axes.plot(
+        point.temperature,
+        point.density / sheet.density_unit,
+        marker="o",
+        markersize=9,
+        markerfacecolor=style.CURRENT_IN,
+        markeredgecolor=style.PAPER,
+        markeredgewidth=1.6,
+        zorder=8,
+        clip_on=False,
+    )
+    sheet.taken.append(box_round((x, y), 0.2, 0.2))
     lines = (
         f"{plain(point.temperature)} K, {plain(point.density * 1e-4)} cm⁻²",
-        f"{sheet.chart.regime.verdict}",
+        sheet.chart.regime.verdict,
     )
-    width = _LETTER * 8.5 / 72 * max(map(len, lines))
-    for dx, dy in ((1, 1), (1, -1), (-1, 1), (-1, -1)):
-        centre = (x + dx * (0.14 + width / 2), y + dy * 0.24)
-        box = (centre[0] - width / 2, centre[1] - 0.17, centre[0] + width / 2, centre[1] + 0.17)
-        if sheet.clear(box, 0.02):
-            break
-    sheet.taken.append(box)
-    for i, line in enumerate(lines):
-        sheet.write((centre[0], centre[1] + (0.08, -0.08)[i]), line, fontsize=8.5, color=style.INK,
-                    fontweight=("normal", "bold")[i], zorder=9)  # fmt: skip
+    width = LETTER * 8.5 / 72 * max(map(len, lines))
+    # Beside the point, preferably within its own region.
+    corners = [(x + i * (0.14 + width / 2), y + j * 0.24) for i in (1, -1) for j in (1, -1)]
+
+    def fit(centre: tuple[float, float]) -> tuple[bool, int]:
+        l, b, r, t = box_round(centre, width, 0.34)
+        ends = {sheet.verdict(place) for place in ((l, b), (l, t), (r, b), (r, t))}
+        return not sheet.clear((l, b, r, t), 0.02), len(ends | {lines[1]})
+
+    centre = min(corners, key=fit)
+    sheet.taken.append(box_round(centre, width, 0.34))
+    for line, rise, weight in zip(lines, (0.08, -0.08), ("normal", "bold"), strict=True):
+        place = (centre[0], centre[1] + rise)
+        sheet.write(place, line, fontsize=8.5, color=style.INK, fontweight=weight, zorder=9)
 
 
 def _name_regions(sheet: Sheet) -> None:
@@ -212,7 +164,7 @@ def _name_regions(sheet: Sheet) -> None:
                 max(0, round(left / step[1])) : round(right / step[1]) + 2,
             ] = False
         for size in (15.0, 12.0, 9.5, 8.0):
-            width, height = (_LETTER * len(name) + 0.6) * size / 72, 1.6 * size / 72
+            width, height = (LETTER * len(name) + 0.6) * size / 72, 1.6 * size / 72
             cells = (max(1, round(height / step[0])), max(1, round(width / step[1])))
             room = minimum_filter(free, size=cells, mode="constant", cval=0)
             if room.any():
@@ -234,75 +186,34 @@ def _name_regions(sheet: Sheet) -> None:
 
 
 def _draw_lines(sheet: Sheet) -> None:
-    """Lines of D/W, the line l_ee = W, and the end of the degenerate range."""
+    """Lines of l_ee/W and D/W, and the end of the degenerate range."""
+    from scipy.ndimage import gaussian_filter
+
     chart = sheet.chart
     for number in range(len(VERDICTS)):
-        _contour(sheet, np.where(chart.verdicts == number, 1.0, 0.1), 0.55, style.PAPER, 0.9)
-    electron = np.broadcast_to(
-        np.asarray(chart.lengths.electron) / chart.width, chart.grounds.shape
-    )
-    accent = style.CURRENT_IN
-    _line(sheet, electron, 1.0, r"$l_\mathrm{ee} = W$", accent, 1.6, "dashed")
-    limit = chart.point.degenerate_below(chart.density)[:, None] / chart.temperature
-    _line(sheet, limit, 1.0, r"$k_B T = E_F$", style.INK, 1.0, "dotted")
+        inside = gaussian_filter(np.where(chart.verdicts == number, 1.0, 0.1), 1.5)
+        sheet.contour(inside, 0.55, style.PAPER, 1.4)
+    electron = np.asarray(chart.lengths.electron) / chart.width
+    for level, width in ((1.0, 1.6), (FLUID_BELOW, 0.9)):
+        times = "" if level == 1.0 else rf"{level:g}\,"
+        text = rf"$l_\mathrm{{ee}} = {times}W$"
+        sheet.line(electron, level, text, style.CURRENT_IN, width, "dashed")
+    sheet.line(_degeneracy(chart), 1.0, "$k_B T = E_F$", style.INK, 1.0, "dotted")
     ratios = np.asarray(chart.lengths.gurzhi) / chart.width
     if not np.isfinite(ratios).all():
         return
     # What D would be where there is no fluid is only hinted at.
     fluid = np.ma.masked_where(chart.verdicts == VERDICTS.index("not a fluid"), ratios)
     for level in _LEVELS:
-        _contour(sheet, ratios, level, style.INK, 0.5, alpha=0.22)
-        bold = level in (OHMIC_BELOW, VISCOUS_ABOVE)
-        _line(sheet, fluid, level, f"$D/W = {level:g}$", style.INK, 1.1 if bold else 0.6, "solid")
+        sheet.contour(ratios, level, style.INK, 0.5, alpha=0.22)
+        width = 1.1 if level in (OHMIC_BELOW, VISCOUS_ABOVE) else 0.6
+        sheet.line(fluid, level, f"$D/W = {level:g}$", style.INK, width)
 
 
-def _contour(
-    sheet: Sheet, values: np.ndarray, level: float, colour: str, width: float, **kind: Any
-) -> Any:
-    """Draw where values have a level; None where they nowhere have."""
-    if not values.min() < level < values.max():
-        return None
-    return sheet.axes.contour(
-        sheet.chart.temperature, sheet.chart.density / sheet.density_unit, np.log(values),
-        [math.log(level)], colors=[colour], linewidths=width, **kind,
-    )  # fmt: skip
-
-
-def _line(
-    sheet: Sheet, values: np.ndarray, level: float, text: str, colour: str, width: float, dash: str
-) -> None:
-    """Draw where values have a level, and write the text on it where there is most room."""
-    drawn = _contour(sheet, values, level, colour, width, linestyles=dash, zorder=5)
-    if drawn is None:
-        return
-    size = 9.5 if dash == "dashed" else 8.0
-    letters = len(text.replace("$", "").replace(r"\mathrm{ee}", "e"))
-    long, high = _LETTER * size / 72 * letters, 1.3 * size / 72
-    best, room = None, 0.0
-    for path in drawn.allsegs[0]:
-        places = sheet.inches(path[:, 0], path[:, 1] * sheet.density_unit)
-        for i in range(8, len(places) - 8, 4):
-            (x, y), (dx, dy) = places[i], places[i + 8] - places[i - 8]
-            reach = math.hypot(dx, dy) or 1.0
-            across = (abs(dx) * long + abs(dy) * high) / reach / 2
-            up = (abs(dy) * long + abs(dx) * high) / reach / 2
-            box = (x - across, y - up, x + across, y + up)
-            if not sheet.clear(box):
-                continue
-            # Far from other texts, and not too near to the frame.
-            apart = min(
-                (math.dist((x, y), ((l + r) / 2, (b + t) / 2)) for l, b, r, t in sheet.taken),
-                default=9.0,
-            )
-            far = min(apart, 2.0 * x, 2.0 * (_AXES[2] - x), 3.0 * y, 3.0 * (_AXES[3] - y))
-            if far > room:
-                best, room = (path[i], box), far
-    if best is not None:
-        sheet.taken.append(best[1])
-        sheet.axes.clabel(
-            drawn, fmt={math.log(level): text}, manual=[tuple(best[0])], fontsize=size,
-            inline_spacing=4, zorder=6,
-        )  # fmt: skip
+def _degeneracy(chart: Chart) -> np.ndarray:
+    """E_F/k_B T, (nn, nT)."""
+    limit = chart.point.degenerate_below(chart.density)
+    return np.asarray(limit[:, None] / chart.temperature)
 
 
 def _draw_device(figure: Figure, device: Device) -> None:
@@ -330,7 +241,7 @@ def _draw_device(figure: Figure, device: Device) -> None:
 def _write_round(figure: Figure, chart: Chart) -> None:
     """Title, subtitle, and the small print: what decides, the laws, where it is from."""
     width, height = _PAPER
-    narrowest, point, laws = chart.regime.narrowest, chart.point, chart.laws
+    narrowest, point = chart.regime.narrowest, chart.point
     where = f"{with_prefix(narrowest.width, 'm')} ({narrowest.place})"
     field_on = f"  ·  B = {with_prefix(point.field, 'T')}" if point.field else ""
     left = _AXES[0] / width
@@ -346,19 +257,20 @@ def _write_round(figure: Figure, chart: Chart) -> None:
         _origin(chart),
     )
     for i, line in enumerate(lines):
-        figure.text(0.12 / width, (0.46 - 0.155 * i) / height, line, fontsize=style.SMALL_SIZE + 0.5,
-                    color=style.MUTED, va="center")  # fmt: skip
+        y = (0.46 - 0.155 * i) / height
+        figure.text(0.12 / width, y, line, fontsize=7.0, color=style.MUTED, va="center")
 
 
 def _laws_in_words(chart: Chart) -> str:
     laws = chart.laws
     share, phonons = laws.phonon_share, laws.phonon_density or 0.0
     onset = f" ($T^4$ below {plain(laws.phonon_onset)} K)" if laws.phonon_onset else ""
+    end = ";  dotted: $k_B T = E_F$" if _degeneracy(chart).min() < 1.0 else ""
     return (
         rf"from the marked point on: $l_\mathrm{{ee}} \propto n^{{{laws.electron_density:g}}} "
         rf"T^{{{-laws.electron_temperature:g}}}$;  $1/l_\mathrm{{mr}}$: {100 * (1 - share):.3g} % "
         rf"impurities $\propto n^{{{-laws.impurity_density:g}}}$, {100 * share:.3g} % phonons "
-        rf"$\propto n^{{{-phonons:g}}} T$" + onset
+        rf"$\propto n^{{{-phonons:g}}} T${onset}{end}"
     )
 
 

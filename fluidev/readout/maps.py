@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from pathlib import Path
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 import numpy as np
 
@@ -12,6 +12,7 @@ from fluidev.readout import style
 from fluidev.readout.dissipation import quadrature_fields
 from fluidev.readout.fields import Drive, Fields, driven_by_current, fields_at
 from fluidev.readout.frame import Frame, Words, draw_boundary, frame
+from fluidev.readout.paint import colour_bar, paint
 from fluidev.readout.provenance import Provenance, plain, provenance_of, put_in_place
 from fluidev.readout.streamlines import Streamlines, streamlines
 from fluidev.readout.surface import Surface, surface_by_size
@@ -25,7 +26,7 @@ if TYPE_CHECKING:
 DRIVE_CURRENT = 1e-6  # A
 DOTS = 200  # per inch
 # Size of the flat triangles of a picture over the size of the device: a few dots.
-_FINEST = 1 / 220
+FINEST = 1 / 220
 
 
 @dataclass(frozen=True)
@@ -110,7 +111,7 @@ def write_drive_maps(
 
 def view(drive: Drive, pair: tuple[str, str], current: float, provenance: Provenance) -> View:
     """What the three pictures of a drive have in common, computed once."""
-    surface = surface_by_size(drive.shape, _FINEST)
+    surface = surface_by_size(drive.shape, FINEST)
     sampled, area = quadrature_fields(drive)
     return View(
         drive, pair, current, surface, fields_at(drive, surface.places), sampled, area, provenance
@@ -133,9 +134,10 @@ def potential_picture(shown: View) -> Figure:
         shown.words("electrochemical potential", _note(lines)),
     )
     norm = Normalize(scale.low / unit, scale.high / unit)
-    painted = _paint(picture, shown, shown.fields.potential / unit, style.DIVERGING, norm)
+    values = shown.fields.potential / unit
+    painted = paint(picture, shown.drive.shape, shown.surface, values, style.DIVERGING, norm)
     _draw_streamlines(picture, lines)
-    _colour_bar(picture, painted, scale, f"potential ({letter}V)")
+    colour_bar(picture, painted, scale, f"potential ({letter}V)")
     draw_boundary(picture, shown.drive.solution.mesh.device, shown.colours)
     return picture.figure
 
@@ -149,8 +151,8 @@ def current_picture(shown: View) -> Figure:
     picture = _plain_frame(shown, "current density")
     norm = Normalize(0.0, scale.high / unit)
     values = np.hypot(*shown.fields.current) / unit
-    painted = _paint(picture, shown, values, style.SEQUENTIAL, norm)
-    _colour_bar(picture, painted, scale, f"current density ({letter}A/m)")
+    painted = paint(picture, shown.drive.shape, shown.surface, values, style.SEQUENTIAL, norm)
+    colour_bar(picture, painted, scale, f"current density ({letter}A/m)")
     draw_boundary(picture, shown.drive.solution.mesh.device, shown.colours)
     return picture.figure
 
@@ -166,8 +168,8 @@ def dissipation_picture(shown: View) -> Figure:
     picture = _plain_frame(shown, "dissipated power density", notes)
     norm = LogNorm(scale.low / unit, scale.high / unit)
     values = np.maximum(shown.fields.dissipation, 1e-3 * scale.low) / unit
-    painted = _paint(picture, shown, values, style.LOGARITHMIC, norm)
-    bar = _colour_bar(picture, painted, scale, f"dissipation ({letter}W/m²)")
+    painted = paint(picture, shown.drive.shape, shown.surface, values, style.LOGARITHMIC, norm)
+    bar = colour_bar(picture, painted, scale, f"dissipation ({letter}W/m²)")
     ticks, texts = style.decade_ticks(scale.low / unit, scale.high / unit)
     bar.set_ticks(ticks, labels=texts)
     bar.minorformatter = NullFormatter()
@@ -191,31 +193,6 @@ def save(figure: Figure, target: Path, provenance: Provenance) -> None:
 def _plain_frame(shown: View, what: str, notes: str = "") -> Frame:
     names = list(shown.drive.solution.contacts)
     return frame(shown.drive.solution.mesh.device, names, shown.words(what, notes))
-
-
-def _paint(picture: Frame, shown: View, values: np.ndarray, colours: str, norm: Any) -> Any:
-    from matplotlib.tri import Triangulation
-
-    points = shown.drive.shape.metres(shown.surface.places) / picture.metres
-    grid = Triangulation(points[0], points[1], shown.surface.triangles)
-    return picture.axes.tripcolor(
-        grid, values, shading="gouraud", cmap=colours, norm=norm, rasterized=True, zorder=1
-    )
-
-
-def _colour_bar(picture: Frame, painted: Any, scale: style.Scale, label: str) -> Any:
-    bar = picture.figure.colorbar(
-        painted,
-        cax=picture.bar,
-        orientation="horizontal" if picture.flat else "vertical",
-        extend=scale.extend,
-    )
-    bar.outline.set_linewidth(0.5)
-    bar.outline.set_edgecolor(style.MUTED)
-    bar.ax.tick_params(colors=style.MUTED, labelsize=style.TICK_SIZE, width=0.7, length=3)
-    bar.ax.tick_params(which="minor", colors=style.MUTED, width=0.4, length=1.5)
-    bar.set_label(label, fontsize=style.LABEL_SIZE, color=style.INK)
-    return bar
 
 
 def _note(lines: Streamlines) -> str:
