@@ -1,4 +1,4 @@
-"""``fluidev map``: pictures of potential, current and dissipation, and a .vtu of the fields."""
+"""``fluidev map``: pictures of a flow and a .vtu of its fields, and where a reading comes from."""
 
 from __future__ import annotations
 
@@ -19,9 +19,13 @@ def arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
         "--current",
         nargs=2,
-        required=True,
         metavar=("IN", "OUT"),
-        help="the contacts where the current enters and leaves",
+        help="the contacts where the current enters and leaves: potential, current, dissipation",
+    )
+    parser.add_argument(
+        "--reading",
+        metavar="NAME",
+        help="a reading of the case: where in the device it comes from",
     )
     parser.add_argument("--pdf", action="store_true", help="write every picture as PDF too")
 
@@ -30,18 +34,27 @@ def run(given: argparse.Namespace) -> int:
     """Solve the case, write its pictures and print their paths; exit status 0."""
     from fluidev.progress import progress
 
+    if given.current is None and given.reading is None:
+        given.parser.error("expected --current IN OUT, --reading NAME or both")
     case = load_case(given)
-    current = _pair(case, given.current)
+    current = None if given.current is None else _pair(case, given.current)
+    if given.reading is not None:
+        _check_reading(case, given.reading)
     folder = given.out or Path(f"{Path(given.case).stem}.map")
     check_writable("--out", folder / "map.png")
     with progress("solving") as step:
         from fluidev.api import solve
         from fluidev.readout.maps import write_maps
+        from fluidev.readout.sensitivity_maps import write_sensitivity_maps
 
         flow = solve(case)
         step.say("drawing")
+        written: list[Path] = []
         try:
-            written = write_maps(flow, current=current, folder=folder, pdf=given.pdf)
+            if current is not None:
+                written += write_maps(flow, current=current, folder=folder, pdf=given.pdf)
+            if given.reading is not None:
+                written += write_sensitivity_maps(flow, given.reading, folder, given.pdf)
         except OSError as refused:
             reason = f"cannot be written: {refused.strerror or refused}"
             raise CaseError("--out", str(folder), reason) from None
@@ -65,4 +78,19 @@ def _pair(case: Case, names: list[str]) -> tuple[str, str]:
     return names[0], names[1]
 
 
-MAP = Command("map", "draw potential, current and dissipation of a case", arguments, run)
+def _check_reading(case: Case, name: str) -> None:
+    """Raises CaseError where --reading is no reading of the case."""
+    from fluidev.case.names import suggestion
+
+    known = [reading.name for reading in case.readings]
+    if name not in known:
+        reason = f"there is no reading {name!r}; {suggestion(name, known)}"
+        raise CaseError("--reading", name, reason, case.name)
+
+
+MAP = Command(
+    "map",
+    "draw potential, current and dissipation of a case, or where a reading comes from",
+    arguments,
+    run,
+)

@@ -10,6 +10,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from fluidev import __version__
+from fluidev.cli.derivatives import derivatives_json, derivatives_table
 from fluidev.cli.files import check_writable, write_whole
 from fluidev.cli.options import Command, load_case
 from fluidev.cli.text_table import aligned
@@ -27,6 +28,11 @@ def arguments(parser: argparse.ArgumentParser) -> None:
         help="write the results as JSON (to FILE, within the folder of --out if that is given; "
         "'-' prints one JSON object in place of the table)",
     )
+    parser.add_argument(
+        "--derivatives",
+        action="store_true",
+        help="say for every reading too what a change of viscosity, friction, … does to it",
+    )
 
 
 def run(given: argparse.Namespace) -> int:
@@ -43,7 +49,7 @@ def run(given: argparse.Namespace) -> int:
 
         flow = solve(case)
         regime = regime_of(case)
-        results = results_of(flow, regime)
+        results = results_of(flow, regime, given.derivatives)
     if given.json is not None:
         text = json.dumps(results, ensure_ascii=False, allow_nan=False, indent=1) + "\n"
     if target is not None:
@@ -54,11 +60,16 @@ def run(given: argparse.Namespace) -> int:
         print(f"{table_of(flow)}\n{regime.verdict}: {regime.reason}")
         if flow.shortfall is not None:
             print(flow.shortfall)
+        if given.derivatives and flow.readings:
+            print(f"\n{derivatives_table(flow)}")
     return 0
 
 
-def results_of(flow: Flow, regime: Regime) -> dict[str, Any]:
-    """The results of a flow as JSON has them: SI values, null for what is not known or infinite."""
+def results_of(flow: Flow, regime: Regime, derivatives: bool = False) -> dict[str, Any]:
+    """The results of a flow as JSON has them: SI values, null for what is not known or infinite.
+
+    derivatives: whether every reading carries its own.
+    """
     return {
         "contacts": list(flow.contacts),
         "conductance_siemens": [[_finite(g) for g in row] for row in flow.conductance],
@@ -73,6 +84,7 @@ def results_of(flow: Flow, regime: Regime) -> dict[str, Any]:
                 "reversed_ohm": _finite(reading.reversed),
                 "symmetric_ohm": _finite(reading.symmetric),
                 "antisymmetric_ohm": _finite(reading.antisymmetric),
+                **({"derivatives": derivatives_json(flow, reading)} if derivatives else {}),
             }
             for reading in flow.readings
         ],

@@ -44,6 +44,9 @@ def parts_of(case: Case) -> Parts:
     _refuse_uncovered(device, fluid.density, blame)
     try:
         found = survey(device, fluid)
+        if found.lowest <= 0.0 and fluid.rounded is not None:
+            fluid = replace(fluid, ratios=fluid.rounded)
+            found = survey(device, fluid)
     except CaseError as mistake:
         raise blame.error(mistake.expected) from None
     _refuse_impossible(found, fluid, blame)

@@ -11,6 +11,7 @@ import numpy as np
 from fluidev.case.load import Case
 from fluidev.flow.adapt import adapt
 from fluidev.flow.blocks import assemble
+from fluidev.flow.derivatives import Derivatives, derivatives
 from fluidev.flow.error import ErrorShares, error_shares
 from fluidev.flow.flow import Estimate, FlowSolution, contact_potentials, four_terminal
 from fluidev.flow.meshes import layer_lengths, mesh_of
@@ -127,6 +128,21 @@ class Flow:
         i, j = (self.solution.index(c) for c in current)
         k, l = (self.solution.index(c) for c in voltage)
         return four_terminal(self.ohmic_conductance, (i, j), (k, l))
+
+    @cached_property
+    def conductance_derivatives(self) -> Derivatives:
+        """Derivatives of the conductance matrix by every parameter of fluid, walls and contacts."""
+        return derivatives(self.solution)
+
+    def derivatives(self, current: tuple[str, str], voltage: tuple[str, str]) -> dict[str, float]:
+        """dR/dp of a four-terminal resistance by the name of p, in Ω per SI unit of p.
+
+        See flow.derivatives for the parameters, their units and where there is none (nan).
+        Raises ValueError for a name that is no contact.
+        """
+        i, j = (self.solution.index(c) for c in current)
+        k, l = (self.solution.index(c) for c in voltage)
+        return self.conductance_derivatives.of_reading((i, j), (k, l))
 
     @cached_property
     def readings(self) -> tuple[Reading, ...]:

@@ -31,7 +31,7 @@ SLOPE = 0.75
 BEND = 0.1
 # The same for the viscosity, which only matters where it has a deep minimum.
 DRAG_SLOPE = 1.2
-DRAG_BEND = 0.4
+DRAG_BEND = 3.0
 # A range below this share of the reference is none.
 FLAT = 1e-9
 

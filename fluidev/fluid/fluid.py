@@ -19,6 +19,8 @@ class Fluid:
     the case does not say enough to know one; mobilities and lengths are those at zero field.
     density: None where the case gives none. Where it varies, coefficients and numbers are those at
     its reference, and ratios are the local coefficients over them; None in a uniform fluid.
+    rounded: the ratios to be used in their place in a device in which the density vanishes
+    somewhere (fluid.local), or None for the same.
     """
 
     kind: str
@@ -26,6 +28,7 @@ class Fluid:
     numbers: Mapping[str, float | None] = field(repr=False)
     density: Density | None = None
     ratios: Ratios | None = field(default=None, repr=False)
+    rounded: Ratios | None = field(default=None, repr=False)
 
 
 def ohmic(coefficients: FluidCoefficients) -> FluidCoefficients:

@@ -16,9 +16,10 @@ from fluidev.fluid.fluid import Fluid
 from fluidev.fluid.kind import FluidKeys
 from fluidev.fluid.ratios import LocalRatios, Ratios
 
-# Where nothing is said about it, no fewer carriers than this share of the reference carry momentum.
-FEWEST = 0.02
-_NONE = 1e-9  # and of a residual density that is given, so that nothing is divided by zero
+# Where the density vanishes, no fewer carriers than this share of the reference carry momentum
+# unless something else is said.
+FEWEST = 0.05
+_NONE = 1e-9  # and never less than this one, so that nothing is divided by zero
 
 
 class Law(Protocol):
@@ -42,12 +43,21 @@ def with_density(
             expected = "goes with a density that varies (a table, gates or puddles); leave it out"
             raise CaseError("fluid.residual_density", None, expected, file)
         return replace(fluid, density=density)
-    ratios = local_ratios(fluid, keys, density, law)
-    numbers = {**fluid.numbers, "density_min_per_m2": None, "density_max_per_m2": None}
-    return replace(fluid, numbers=numbers, density=density, ratios=ratios)
+    rounded = None
+    if keys.residual_density is None:
+        rounded = local_ratios(fluid, keys, density, law, FEWEST * density.reference)
+    return replace(
+        fluid,
+        numbers={**fluid.numbers, "density_min_per_m2": None, "density_max_per_m2": None},
+        density=density,
+        ratios=local_ratios(fluid, keys, density, law),
+        rounded=rounded,
+    )
 
 
-def local_ratios(fluid: Fluid, keys: FluidKeys, density: Density, law: Law) -> Ratios:
+def local_ratios(
+    fluid: Fluid, keys: FluidKeys, density: Density, law: Law, fewest: float = 0.0
+) -> Ratios:
     """The coefficients of a fluid over those at the reference density, at points (2, ...) in m.
 
     The charge density is ρ = q n. What carries momentum are N carriers (``carrying``): η, k and the
@@ -63,7 +73,8 @@ def local_ratios(fluid: Fluid, keys: FluidKeys, density: Density, law: Law) -> R
         n = profile(points)
         if not np.all(np.isfinite(n)):
             raise _not_a_number(density, points, n)
-        count = carrying(n, reference, keys.residual_density)
+        count = carrying(n, keys.residual_density or 0.0, fewest)
+        count = np.maximum(count, _NONE * reference)
         carriers = carriers_at(keys, count, np.where(n < 0.0, -1.0, 1.0))
         shear, friction = law(carriers)
         in_field, hall = viscosities_in_field(shear, keys.hall_viscosity_ratio, carriers, field)
@@ -79,18 +90,19 @@ def local_ratios(fluid: Fluid, keys: FluidKeys, density: Density, law: Law) -> R
     return ratios
 
 
-def carrying(n: np.ndarray, reference: float, residual: float | None) -> np.ndarray:
+def carrying(n: np.ndarray, residual: float, fewest: float) -> np.ndarray:
     """How many carriers (m⁻²) carry momentum where the density is n (m⁻², of any sign).
 
     With a residual density n*, of those of both signs that temperature and puddles finer than the
-    given density leave where n is zero, it is √(n² + n*²). Without one it is |n|, rounded off from
-    twice the smallest share of the reference on so that it does not fall below that share: a fluid
-    of no carriers has neither viscosity nor friction, and its two sides would not feel each other.
+    given density leave where n is zero, it is √(n² + n*²). Without one it is |n|, and where n
+    vanishes it is rounded off from 2·fewest on so that it does not fall below fewest: a fluid of no
+    carriers has neither viscosity nor friction, and its two sides would not feel each other.
     """
+    if residual:
+        return np.hypot(n, residual)
     size = np.abs(n)
-    if residual is not None:
-        return np.hypot(n, max(residual, _NONE * reference))
-    fewest = FEWEST * reference
+    if not fewest:
+        return size
     return np.where(size < 2.0 * fewest, fewest + n * n / (4.0 * fewest), size)
 
 

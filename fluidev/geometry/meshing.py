@@ -201,33 +201,45 @@ def _boundary_layers(
         return mesh
     member = np.zeros(mesh.count, dtype=bool)
     member[mesh.boundary[np.isin(mesh.stretch, side)].ravel()] = True
-    depth = _depth(mesh, member, 2)
-    if depth <= thickness:
+    if _depth(mesh, member, 2) <= thickness:
         return mesh
     mesh = separate(mesh, member)
-    wanted = math.ceil(math.log(thickness / depth) / math.log(ratio))
-    for _ in range(min(wanted, settings.most_layers)):
+    for _ in range(settings.most_layers):
         member = _extended(member, mesh.count)
-        touch, depths = _depths(mesh, member, 2)
-        deep = np.zeros(mesh.count, dtype=bool)
-        deep[mesh.triangles[touch[depths > thickness]].ravel()] = True
-        mesh = split_toward(mesh, member & deep, ratio)
+        deep = _deep(mesh, member, side, thickness)
+        if not deep.any():
+            break
+        mesh = split_toward(mesh, deep, ratio)
     return mesh
+
+
+def _deep(
+    mesh: Triangulation, member: np.ndarray, side: tuple[int, ...], thickness: float
+) -> np.ndarray:
+    """Members (count,) on a side with an edge whose other end lies deeper than `thickness`."""
+    vertices = np.empty((mesh.count, 2))
+    vertices[mesh.triangles.ravel()] = mesh.nodes[:, :3].reshape(-1, 2)
+    start, end = mesh.boundary[np.isin(mesh.stretch, side)].T
+    along = np.zeros((mesh.count, 2))
+    along[start] = along[end] = vertices[end] - vertices[start]
+    along[member] /= np.hypot(*along[member].T)[:, None]
+    pairs = mesh.triangles[:, [0, 1, 1, 2, 2, 0, 1, 0, 2, 1, 0, 2]].reshape(-1, 2)
+    near, far = pairs[member[pairs[:, 0]] & ~member[pairs[:, 1]]].T
+    leap = vertices[far] - vertices[near]
+    depth = np.abs(along[near, 0] * leap[:, 1] - along[near, 1] * leap[:, 0])
+    deep = np.zeros(mesh.count, dtype=bool)
+    deep[near[depth > thickness]] = True
+    return deep
 
 
 def _depth(mesh: Triangulation, member: np.ndarray, least: int) -> float:
     """Largest height of the triangles with at least that many vertices among the members."""
-    return float(_depths(mesh, member, least)[1].max())
-
-
-def _depths(mesh: Triangulation, member: np.ndarray, least: int) -> tuple[np.ndarray, np.ndarray]:
-    """Triangles with at least that many vertices among the members, and their heights."""
-    touch = np.flatnonzero(member[mesh.triangles].sum(axis=1) >= least)
+    touch = member[mesh.triangles].sum(axis=1) >= least
     corner = mesh.nodes[touch, :3]
     length = np.hypot(*(np.roll(corner, -1, axis=1) - corner).transpose(2, 0, 1))
     first, second = corner[:, 1] - corner[:, 0], corner[:, 2] - corner[:, 0]
     area = 0.5 * np.abs(first[:, 0] * second[:, 1] - first[:, 1] * second[:, 0])
-    return touch, 2 * area / length.max(axis=1)
+    return float((2 * area / length.max(axis=1)).max())
 
 
 def _extended(member: np.ndarray, count: int) -> np.ndarray:

@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 from datetime import date
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
@@ -108,6 +108,8 @@ def _dress(sheet: Sheet) -> None:
 
 def _mark_point(sheet: Sheet) -> None:
     """The operating point with its temperature, density and verdict."""
+    from matplotlib.patches import Rectangle
+
     point = sheet.chart.point
     x, y = sheet.inches(point.temperature, point.density).tolist()
     if not (0.0 <= x <= sheet.size[0] and 0.0 <= y <= sheet.size[1]):
@@ -139,9 +141,20 @@ def _mark_point(sheet: Sheet) -> None:
 
     centre = min(corners, key=fit)
     sheet.taken.append(box_round(centre, width, 0.34))
+    (left, bottom, _, _), (across, up) = box_round(centre, width, 0.36), sheet.size
+    look: dict[str, Any] = {
+        "facecolor": style.PAPER,
+        "edgecolor": style.MUTED,
+        "linewidth": 0.5,
+        "alpha": 0.92,
+    }
+    corner, transform = (left / across, bottom / up), sheet.axes.transAxes
+    tag = Rectangle(corner, width / across, 0.36 / up, transform=transform, zorder=8, **look)
+    sheet.axes.add_patch(tag)
     for line, rise, weight in zip(lines, (0.08, -0.08), ("normal", "bold"), strict=True):
         place = (centre[0], centre[1] + rise)
-        sheet.write(place, line, fontsize=8.5, color=style.INK, fontweight=weight, zorder=9)
+        letters = {"fontsize": 8.5, "color": style.INK, "fontweight": weight, "zorder": 9}
+        sheet.write(place, line, halo=0.0, **letters)
 
 
 def _name_regions(sheet: Sheet) -> None:

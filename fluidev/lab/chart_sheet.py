@@ -20,8 +20,8 @@ LETTER = 0.6  # mean width of a letter over the size of its type
 TONES = {
     "ohmic": "#f6d9a0",
     "crossover": "#edeff2",
-    "viscous": "#86bde0",
-    "not a fluid": "#c9a9b8",
+    "viscous": "#78b4da",
+    "not a fluid": "#cfb3bf",
     "not known": "#ffffff",
 }
 
@@ -81,11 +81,11 @@ class Sheet:
             for l, b, r, t in self.taken
         )
 
-    def write(self, place: tuple[float, float], text: str, **kind: Any) -> None:
-        """Write a text centred at a place, with the tone there round its letters."""
+    def write(self, place: tuple[float, float], text: str, halo: float = 3.5, **kind: Any) -> None:
+        """Write a text centred at a place; halo: points of the tone there round its letters."""
         from matplotlib.patheffects import withStroke
 
-        halo = withStroke(linewidth=3.5, foreground=TONES[self.verdict(place)])
+        around = withStroke(linewidth=halo, foreground=TONES[self.verdict(place)])
         x, y = place[0] / self.size[0], place[1] / self.size[1]
         axes = self.axes
         axes.text(
@@ -95,7 +95,7 @@ class Sheet:
             ha="center",
             va="center",
             transform=axes.transAxes,
-            path_effects=[halo],
+            path_effects=[around],
             **kind,
         )
 

@@ -23,12 +23,14 @@ class Regime:
     """The verdict on a case and what it rests on.
 
     narrowest: the place of the device that lengths are measured against. lengths: numbers, not
-    arrays. turning: |ω_c| τ, None where it is not known.
+    arrays. turning: |ω_c| τ, None where it is not known. reference: the density (m⁻²) that all of
+    it is for, where the density varies.
     """
 
     narrowest: Narrowest
     lengths: Lengths
     turning: float | None = None
+    reference: float | None = None
 
     @property
     def ground(self) -> Ground:
@@ -48,11 +50,14 @@ class Regime:
         words = {name: _metres(length) for name, length in named.items()}
         words |= {f"{name}_W": self._compared(float(length)) for name, length in named.items()}
         short = replace(lengths, electron=0.0, momentum=math.inf)
-        return str(self.ground.value[1]).format(
+        reason = str(self.ground.value[1]).format(
             **words,
             R_c=_metres(lengths.cyclotron),
             fluid=_ground(short, self.narrowest.width).verdict,
         )
+        if self.reference is not None:
+            reason += f"; all this at the reference density {plain(self.reference / 1e4)} cm⁻²"
+        return reason
 
     @property
     def warning(self) -> str | None:
@@ -118,7 +123,10 @@ def regime(device: Device, fluid: Fluid, contacts: Collection[str] | None = None
     turning = None
     if frequency is not None and time is not None:
         turning = abs(frequency) * time if frequency else 0.0
-    return Regime(smallest_width(device, contacts), lengths_of(fluid), turning)
+    reference = None
+    if fluid.density is not None and fluid.density.profile is not None:
+        reference = fluid.density.reference
+    return Regime(smallest_width(device, contacts), lengths_of(fluid), turning, reference)
 
 
 def regime_of(case: Case) -> Regime:

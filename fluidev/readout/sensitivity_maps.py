@@ -20,9 +20,13 @@ from fluidev.readout.surface import Surface, surface_by_size
 if TYPE_CHECKING:
     from matplotlib.figure import Figure
 
+    from fluidev.flow.flow import FlowSolution
     from fluidev.flow.run import Flow, Reading
 
 _SMALL = 1e-6  # a part below this share of the others is not worth a word
+# Colours tell apart the densities between which these shares of the reading lie, over at most so
+# many times: at the ends of contacts the density has no bound.
+_FAINT, _STRONG, _SPAN = 0.1, 0.95, 100.0
 
 
 @dataclass(frozen=True)
@@ -87,11 +91,9 @@ def write_sensitivity_maps(
     folder = Path(folder)
     folder.mkdir(parents=True, exist_ok=True)
     start = f"{shown.provenance.stem}-{plain(reading) or 'reading'}-from"
-    kinds = ("viscosity", "friction", "both")
-    if not flow.fluid.coefficients.friction:
-        kinds = kinds[:1]
+    with_friction = bool(flow.fluid.coefficients.friction)
     written = []
-    for kind in kinds:
+    for kind in ("viscosity", "friction", "both") if with_friction else ("viscosity",):
         figure = origin_picture(shown, kind)
         for ending in ("png", "pdf") if pdf else ("png",):
             target = folder / f"{start}-{kind}.{ending}"
@@ -121,11 +123,15 @@ def origin(flow: Flow, name: str) -> Origin:
 
 
 def origin_picture(shown: Origin, kind: str) -> Figure:
-    """Density of a reading by "viscosity", "friction" or "both", zero in the middle of the scale."""
-    from matplotlib.colors import Normalize
+    """Density of a reading by "viscosity", "friction" or "both", zero in the middle of the scale.
+
+    The scale is that of asinh: linear where the density is faint, logarithmic where it is strong.
+    """
+    from matplotlib.colors import AsinhNorm
+    from matplotlib.ticker import NullLocator
 
     device = shown.found.current.solution.mesh.device
-    scale = style.symmetric_scale(getattr(shown.sampled, kind), shown.area)
+    scale, faint = _scale(getattr(shown.sampled, kind), shown.area)
     names = zip(shown.contacts, shown.roles, strict=True)
     texts = [f"{name}\n{role}".rstrip() for name, role in names]
     picture = frame(device, texts, words(shown, kind))
@@ -133,13 +139,31 @@ def origin_picture(shown: Origin, kind: str) -> Figure:
     unit, letter = style.prefix(scale.high * picture.metres**2)
     per = unit / picture.metres**2
     values = getattr(shown.painted, kind) / per
-    norm = Normalize(scale.low / per, scale.high / per)
+    norm = AsinhNorm(faint / per, scale.low / per, scale.high / per)
     painted = paint(
         picture, shown.found.current.shape, shown.surface, values, style.DIVERGING, norm
     )
-    colour_bar(picture, painted, scale, f"share of the reading ({letter}Ω/{length}²)")
+    bar = colour_bar(picture, painted, scale, f"share of the reading ({letter}Ω/{length}²)")
+    ticks, labels = style.decade_ticks(min(faint, 0.1 * scale.high) / per, scale.high / per)
+    bar.set_ticks(
+        [*(-t for t in reversed(ticks)), 0.0, *ticks],
+        labels=[*(f"−{text}" for text in reversed(labels)), "0", *labels],
+    )
+    bar.minorlocator = NullLocator()
     draw_boundary(picture, device, shown.colours)
     return picture.figure
+
+
+def _scale(values: np.ndarray, area: np.ndarray) -> tuple[style.Scale, float]:
+    """A range with zero in its middle, and the density at which it turns from linear to log."""
+    sizes = np.abs(values)
+    weight = sizes * area
+    if not weight.any():
+        return style.Scale(-1.0, 1.0, False, False), 1.0
+    top = style.percentile(sizes, weight, _STRONG)
+    top = float(sizes.max()) if sizes.max() <= 1.35 * top else top
+    faint = max(style.percentile(sizes, weight, _FAINT), top / _SPAN)
+    return style.Scale(-top, top, bool(values.min() < -top), bool(values.max() > top)), faint
 
 
 def words(shown: Origin, kind: str) -> Words:
@@ -151,7 +175,7 @@ def words(shown: Origin, kind: str) -> Words:
         "viscosity": parts.viscous,
         "slip along walls": parts.walls,
         "friction": parts.friction,
-        "the rest": parts.rest,
+        _rest(shown.found.current.solution): parts.rest,
     }
     size = sum(map(abs, pieces.values()))
     listed = [
@@ -159,13 +183,24 @@ def words(shown: Origin, kind: str) -> Words:
         for name, part in pieces.items()
         if abs(part) > _SMALL * size
     ]
-    notes = f"{value} = " + " + ".join(listed).replace("+ −", "− ")
+    notes = f"{value} = {' + '.join(listed)}".replace("+ −", "− ")
     if reading.ohmic is not None:
-        notes += f"  ·  without viscosity {style.quantity(reading.ohmic, 'Ω')}"
+        notes += f"  ·  without viscosity it would be {style.quantity(reading.ohmic, 'Ω')}"
     return Words(
         shown.provenance.title or shown.provenance.case,
         f"where “{reading.name}” ({value}) comes from: {due}",
-        notes,
+        f"{notes}  ·  red raises it, blue lowers it",
         shown.provenance.line,
         shown.provenance.warning,
     )
+
+
+def _rest(solution: FlowSolution) -> str:
+    """What else than viscosity and friction makes a reading."""
+    weights = solution.weights
+    causes = {
+        "contact resistance": any(weights.contacts),
+        "intrinsic conduction": weights.intrinsic,
+        "field": weights.field,
+    }
+    return ", ".join(name for name, there in causes.items() if there) or "the rest"

@@ -9,6 +9,7 @@ from typing import Any
 import numpy as np
 
 import fluidev
+from fluidev.flow.run import Reading
 from fluidev.fluid import fluid_of
 
 BAR = """\
@@ -52,14 +53,7 @@ def made_up_flow(case: fluidev.Case) -> Any:
     """What a solved flow offers to the commands, with numbers that are easy to recognise."""
     values = [(0.0123456, 2e-5, 0.0115), (25.0, 0.0, None)]
     readings = [
-        SimpleNamespace(
-            name=reading.name,
-            current=reading.current,
-            voltage=reading.voltage,
-            resistance=np.float64(value),
-            error=error,
-            ohmic=ohmic,
-        )
+        Reading(reading.name, reading.current, reading.voltage, np.float64(value), error, ohmic)
         for reading, (value, error, ohmic) in zip(case.readings, values, strict=False)
     ]
     return SimpleNamespace(
@@ -70,4 +64,5 @@ def made_up_flow(case: fluidev.Case) -> Any:
         readings=tuple(readings),
         mesh=SimpleNamespace(elements=np.int64(11)),
         unknowns=22,
+        shortfall=None,
     )

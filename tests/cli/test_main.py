@@ -42,7 +42,7 @@ def test_help_and_version(capsys: pytest.CaptureFixture[str]) -> None:
         (["resist", "bar.toml", "--jso", "x"], "unrecognized arguments: --jso x; did you mean"),
         (["resist", "bar.toml", "bar2.toml"], "unrecognized arguments: bar2.toml; see fluidev res"),
         (["map", "bar.toml", "--current", "S"], "--current: expected 2 arguments; see fluidev map"),
-        (["map", "bar.toml"], "the following arguments are required: --current; see fluidev map"),
+        (["map", "bar.toml"], "expected --current IN OUT, --reading NAME or both; see fluidev map"),
         (["check", "bar.toml", "--set"], "--set: expected one argument; see fluidev check --help"),
     ],
 )

@@ -14,7 +14,8 @@ from matplotlib.image import imread
 import fluidev
 from fluidev.readout import maps
 from fluidev.readout.fields import driven_by_current, fields_at
-from fluidev.readout.provenance import Provenance, plain, put_in_place
+from fluidev.readout.notebook import flow_html
+from fluidev.readout.provenance import Provenance, plain, provenance_of, put_in_place
 from tests.readout.devices import UM, annulus, cavity, fluid, half_ring, solved
 
 PROVENANCE = Provenance("my bar.toml", "0123456789abcdef" * 4, "A bar", 10, 20, date(2024, 5, 17))
@@ -170,3 +171,31 @@ def test_a_file_is_replaced_whole_or_not_at_all(tmp_path):
 def test_names_in_file_names(name, part):
     assert plain(name) == part
     assert re.fullmatch(r"[^/\\<>]*", plain(name))
+
+
+def test_what_is_no_fluid_is_said_on_every_output(tmp_path):
+    gas = (
+        'density = "1e12/cm^2"\nmass = "0.03 m_e"\n'
+        'electron_mean_free_path = "3 um"\nmomentum_mean_free_path = "9 um"\n'
+    )
+    flow = fluidev.solve(fluidev.parse(CASE[: CASE.index("sheet_resistance")] + gas))
+    provenance = provenance_of(flow)
+    assert provenance.warning.startswith("not a fluid: electrons fly 3.00 µm between collisions")
+    written = maps.write_maps(flow, ("left end", "D"), tmp_path)
+    assert len(written) == 4
+    for path in written:
+        assert provenance.warning.encode("latin1" if path.suffix == ".png" else "utf-8") in (
+            path.read_bytes()
+        )
+    drive = driven_by_current(flow.solution, ("left end", "D"), 1e-6)
+    shown = maps.view(drive, ("left end", "D"), 1e-6, provenance)
+    for draw in (maps.potential_picture, maps.current_picture, maps.dissipation_picture):
+        texts = {text.get_text(): text for text in draw(shown).texts}
+        said = texts[provenance.warning]
+        x, y = said.get_position()
+        assert 0.0 < x < 1.0 and 0.0 < y < min(
+            text.get_position()[1] for name, text in texts.items() if name == shown.words("").title
+        )
+    assert provenance.warning in flow_html(flow)
+    fluid_flow = fluidev.solve(fluidev.parse(CASE))
+    assert provenance_of(fluid_flow).warning == ""
