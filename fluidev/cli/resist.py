@@ -16,7 +16,7 @@ from fluidev.cli.options import Command, load_case
 from fluidev.cli.text_table import aligned
 
 if TYPE_CHECKING:
-    from fluidev.flow.run import Flow
+    from fluidev.flow.run import Flow, Reading
     from fluidev.readout.regime import Regime
 
 
@@ -81,9 +81,7 @@ def results_of(flow: Flow, regime: Regime, derivatives: bool = False) -> dict[st
                 "resistance_ohm": _finite(reading.resistance),
                 "error_ohm": _finite(reading.error),
                 "ohmic_ohm": _finite(reading.ohmic),
-                "reversed_ohm": _finite(reading.reversed),
-                "symmetric_ohm": _finite(reading.symmetric),
-                "antisymmetric_ohm": _finite(reading.antisymmetric),
+                **_in_field(reading),
                 **({"derivatives": derivatives_json(flow, reading)} if derivatives else {}),
             }
             for reading in flow.readings
@@ -94,6 +92,17 @@ def results_of(flow: Flow, regime: Regime, derivatives: bool = False) -> dict[st
         "tolerance_shortfall": flow.shortfall,
         "case_sha256": flow.case.text_sha256,
         "version": __version__,
+    }
+
+
+def _in_field(reading: Reading) -> dict[str, float | None]:
+    """What a reading is in the opposite field and how it splits, nothing without a field."""
+    if reading.reversed is None:
+        return {}
+    return {
+        "reversed_ohm": _finite(reading.reversed),
+        "symmetric_ohm": _finite(reading.symmetric),
+        "antisymmetric_ohm": _finite(reading.antisymmetric),
     }
 
 

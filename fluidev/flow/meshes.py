@@ -52,7 +52,12 @@ def mesh_of(
         )
     extra = _together(_sources(parts, found), extra)
     return mesh_device(
-        parts.device, gurzhi * found.gurzhi, layer * found.layer, settings, extra, sharper
+        parts.device,
+        gurzhi * found.spread.gurzhi,
+        layer * found.spread.layer,
+        settings,
+        extra,
+        sharper,
     )
 
 

@@ -3,10 +3,12 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
+from functools import cached_property
 
 from fluidev.case.load import Case
 from fluidev.case.words import written
 from fluidev.errors import CaseError
+from fluidev.flow.spread import Spread, spread_of
 from fluidev.flow.survey import Survey, survey
 from fluidev.fluid.density.landscape import Density
 from fluidev.fluid.fluid import Fluid
@@ -23,11 +25,16 @@ SHORT = 1e-9
 
 @dataclass(frozen=True)
 class Parts:
-    """The device and the fluid of a case; survey: how the fluid varies over the device, or None."""
+    """The device and the fluid of a case; spread: over what it ranges, None where it is uniform."""
 
     device: Device
     fluid: Fluid
-    survey: Survey | None = None
+    spread: Spread | None = None
+
+    @cached_property
+    def survey(self) -> Survey | None:
+        """How the fluid varies over the device, made when first asked for; None for uniform."""
+        return None if self.spread is None else survey(self.device, self.fluid, self.spread)
 
 
 def parts_of(case: Case) -> Parts:
@@ -38,22 +45,23 @@ def parts_of(case: Case) -> Parts:
     with the carriers.
     """
     fluid, device = fluid_of(case), build_device(case)
-    if fluid.density is None or fluid.ratios is None:
+    density = fluid.density
+    if density is None or fluid.ratios is None:
         return Parts(device, fluid)
-    blame = _Blame(case, fluid.density)
-    _refuse_uncovered(device, fluid.density, blame)
+    blame = _Blame(case, density)
+    _refuse_uncovered(device, density, blame)
     try:
-        found = survey(device, fluid)
+        found = spread_of(device, fluid)
         if found.lowest <= 0.0 and fluid.rounded is not None:
             fluid = replace(fluid, ratios=fluid.rounded)
-            found = survey(device, fluid)
+            found = spread_of(device, fluid)
     except CaseError as mistake:
         raise blame.error(mistake.expected) from None
     _refuse_impossible(found, fluid, blame)
     numbers = {
         **fluid.numbers,
-        "density_min_per_m2": found.lowest * fluid.density.reference,
-        "density_max_per_m2": found.highest * fluid.density.reference,
+        "density_min_per_m2": found.lowest * density.reference,
+        "density_max_per_m2": found.highest * density.reference,
     }
     return Parts(device, replace(fluid, numbers=numbers), found)
 
@@ -95,7 +103,7 @@ def _refuse_uncovered(device: Device, density: Density, blame: _Blame) -> None:
             )
 
 
-def _refuse_impossible(found: Survey, fluid: Fluid, blame: _Blame) -> None:
+def _refuse_impossible(found: Spread, fluid: Fluid, blame: _Blame) -> None:
     assert fluid.density is not None
     if max(found.highest, -found.lowest) > MOST:
         raise blame.error(

@@ -1,7 +1,4 @@
-"""How a fluid varies over a device: a quadtree of cells, each small enough to follow it.
-
-Nothing heavy is imported, since this also finds densities that cannot be used.
-"""
+"""How a fluid varies over a device: a quadtree of cells, each small enough to follow it."""
 
 from __future__ import annotations
 
@@ -10,10 +7,11 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from fluidev.flow.spread import Spread
 from fluidev.fluid.fluid import Fluid
 from fluidev.fluid.ratios import LocalRatios
 from fluidev.geometry.device import Device
-from fluidev.geometry.interior import boundary_points, interior
+from fluidev.geometry.interior import interior
 
 if TYPE_CHECKING:
     import shapely
@@ -29,9 +27,10 @@ MOST_CELLS = 8000
 SLOPE = 0.75
 # … and bend away from a straight line by this share.
 BEND = 0.1
-# The same for the viscosity, which only matters where it has a deep minimum.
+# The same for the viscosity, which only matters where it falls below this share of what it is.
+DEEP = 0.15
 DRAG_SLOPE = 1.2
-DRAG_BEND = 3.0
+DRAG_BEND = 1.0
 # A range below this share of the reference is none.
 FLAT = 1e-9
 
@@ -41,115 +40,82 @@ _FIRST = 33  # and of the largest ones, so that nothing narrow is missed
 
 @dataclass(frozen=True)
 class Survey:
-    """A fluid over a device.
+    """A fluid over a device, as closely as a mesh has to follow it.
 
     cells: (n, 3) x and y of the middle and size in m, of every cell smaller than the largest; they
-    cover what needs them. lowest, highest: the least and the largest charge density over the
-    reference, and lowest_at: (x, y) in m of the least. gurzhi, layer: the least Gurzhi length and the least thickness
-    √(η σ_Q)/|ρ| of the intrinsic layer over those of the reference. unresolved: a point (m) where
-    the density changes faster than the smallest cell can follow and nothing smooths it, or None.
+    cover what needs them. spread: over all points looked at. unresolved: a point (m) where the
+    fluid changes faster than the smallest cell can follow, or in too many places, or None.
     """
 
     cells: np.ndarray
-    lowest: float
-    highest: float
-    lowest_at: tuple[float, float]
-    gurzhi: float
-    layer: float
+    spread: Spread
     unresolved: tuple[float, float] | None
 
 
-@dataclass
-class _Extremes:
-    """What the survey has met so far."""
-
-    lowest: float = np.inf
-    highest: float = -np.inf
-    lowest_at: tuple[float, float] = (0.0, 0.0)
-    gurzhi: float = np.inf
-    layer: float = np.inf
-
-    def meet(self, points: np.ndarray, at: LocalRatios) -> None:
-        """Take in the ratios at points (2, n) that lie in the device."""
-        density = np.asarray(at.charge_density)
-        if not density.size:
-            return
-        least = int(np.argmin(density))
-        if density[least] < self.lowest:
-            self.lowest = float(density[least])
-            self.lowest_at = (float(points[0, least]), float(points[1, least]))
-        self.highest = max(self.highest, float(density.max()))
-        shear = np.asarray(at.shear_viscosity)
-        self.gurzhi = min(self.gurzhi, float(np.sqrt(np.min(shear / at.friction))))
-        size = np.maximum(np.abs(density), np.finfo(float).tiny)
-        self.layer = min(self.layer, float(np.min(np.sqrt(shear) / size)))
-
-
-def survey(device: Device, fluid: Fluid) -> Survey:
-    """The survey of a fluid whose density varies.
+def survey(device: Device, fluid: Fluid, spread: Spread) -> Survey:
+    """The survey of a fluid whose density varies; spread: what is known of it beforehand.
 
     Raises CaseError where the density is no number.
     """
     import shapely
 
-    assert fluid.ratios is not None
     region = interior(device)
     x0, y0, x1, y1 = region.bounds
-    size = max(x1 - x0, y1 - y0)
-    met = _Extremes()
-    edge = boundary_points(device, size / 256)
-    met.meet(edge, fluid.ratios(edge))
-    cells = _largest_cells(x0, y0, x1, y1, COARSE * size)
-    kept, unresolved = [], None
+    cells = _largest_cells(x0, y0, x1, y1, COARSE * max(x1 - x0, y1 - y0))
+    kept = [np.zeros((0, 3))]
     for level in range(DEEPEST + 1):
         cells = cells[shapely.intersects(region, _boxes(cells))]
-        if not len(cells) or len(cells) > MOST_CELLS:
+        if len(cells) > MOST_CELLS:
             break
-        rough = _rough(cells, fluid, region, met, _FIRST if level == 0 else _SIDE)
-        if level > 0:
-            kept.append(cells[~rough])
-        cells = cells[rough]
-        if level == DEEPEST and len(cells):
-            kept.append(cells)
-            unresolved = _middle(cells[0])
-        cells = _quarters(cells)
-    if len(cells) > MOST_CELLS:
-        kept.append(cells)
-        unresolved = _middle(cells[0])
-    found = np.concatenate(kept) if kept else np.zeros((0, 3))
-    return Survey(found, met.lowest, met.highest, met.lowest_at, met.gurzhi, met.layer, unresolved)
+        points, inside = _sampled(cells, region, _FIRST if level == 0 else _SIDE)
+        at = _ratios_inside(fluid, points, inside)
+        spread = spread.with_points(points[:, inside], _taken(at, inside))
+        rough = _rough(cells[:, 2], fluid, at, inside, spread)
+        kept += [cells[~rough]] if level else []
+        cells = cells[rough] if level == DEEPEST else _quarters(cells[rough])
+        if not len(cells):
+            break
+    unresolved = (float(cells[0, 0]), float(cells[0, 1])) if len(cells) else None
+    return Survey(np.concatenate([*kept, cells]), spread, unresolved)
 
 
-def _rough(
-    cells: np.ndarray, fluid: Fluid, region: shapely.Polygon, met: _Extremes, side: int
-) -> np.ndarray:
-    """Which cells (n,) are too large for what happens in them."""
+def _sampled(
+    cells: np.ndarray, region: shapely.Polygon, side: int
+) -> tuple[np.ndarray, np.ndarray]:
+    """Points (2, n, side, side) in m on every cell, its edges included, and which are inside."""
     import shapely
 
     share = np.linspace(-0.5, 0.5, side)
     offset = cells[:, 2, None, None] * share
     x, y, _ = cells.T[:, :, None, None]
-    x = np.broadcast_to(x + offset.transpose(0, 2, 1), (len(cells), side, side))
-    y = np.broadcast_to(y + offset, (len(cells), side, side))
-    points = np.stack([x, y])
-    inside = shapely.contains_xy(region, x, y)
-    at = _ratios_inside(fluid, points, inside)
-    met.meet(points[:, inside], _taken(at, inside))
-    density = np.where(inside, at.charge_density, np.nan)
-    span = met.highest - met.lowest
+    shape = (len(cells), side, side)
+    x = np.broadcast_to(x + offset.transpose(0, 2, 1), shape)
+    y = np.broadcast_to(y + offset, shape)
+    return np.stack([x, y]), shapely.contains_xy(region, x, y)
+
+
+def _rough(
+    sizes: np.ndarray, fluid: Fluid, at: LocalRatios, inside: np.ndarray, spread: Spread
+) -> np.ndarray:
+    """Which cells of these sizes (n,) in m are too large for what happens in them."""
+    span = spread.highest - spread.lowest
     if span < FLAT:
-        return np.zeros(len(cells), dtype=bool)
-    slope, bend = _change(density)
+        return np.zeros(len(sizes), dtype=bool)
+    density = np.where(inside, at.charge_density, np.nan)
     viscosity = np.where(inside, at.shear_viscosity, np.nan)
+    slope, bend = _change(density)
     here, momentum = _largest([density]), _largest([viscosity])
-    natural, smoothing = _natural(fluid, momentum, slope / cells[:, 2])
+    natural, smoothing = _natural(fluid, momentum, slope / sizes)
     scale = np.minimum(span, here + natural)
     rough = (slope > SLOPE * scale) | (bend > BEND * scale)
     # Where intrinsic conduction smooths the flow a sharper density need not be followed, …
-    rough &= cells[:, 2] > smoothing / np.maximum(here, np.finfo(float).tiny)
+    rough &= sizes > smoothing / np.maximum(here, np.finfo(float).tiny)
     # … unless the two sides of a line of few carriers drag each other across it.
     slope, bend = _change(viscosity)
-    return np.asarray(rough | (slope > DRAG_SLOPE * momentum) | (bend > DRAG_BEND * momentum))
+    deep = np.where(inside, at.shear_viscosity, np.inf).min(axis=(1, 2)) < DEEP * momentum
+    return np.asarray(
+        rough | deep & ((slope > DRAG_SLOPE * momentum) | (bend > DRAG_BEND * momentum))
+    )
 
 
 def _change(values: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
@@ -223,7 +189,3 @@ def _boxes(cells: np.ndarray) -> np.ndarray:
 
     x, y, size = cells.T
     return shapely.box(x - 0.5 * size, y - 0.5 * size, x + 0.5 * size, y + 0.5 * size)
-
-
-def _middle(cell: np.ndarray) -> tuple[float, float]:
-    return float(cell[0]), float(cell[1])

@@ -73,6 +73,7 @@ def test_json_on_stdout_is_one_object_and_nothing_else(capsys: pytest.CaptureFix
         "fluid",
         "regime",
         "mesh",
+        "tolerance_shortfall",
         "case_sha256",
         "version",
     ]

@@ -53,6 +53,13 @@ def test_symmetric_without_a_field_and_no_current_is_lost(shape, name):
     assert np.linalg.eigvalsh(conductance).min() > -1e-10 * scale
 
 
+def test_no_current_is_lost_in_the_smallest_cells():
+    """Round the hole the velocity goes like r to 0.3 and less: cells shrink to a millionth."""
+    conductance = solve_device(holed_plate(), FLUIDS["viscous"]).conductance
+    assert gap(conductance, conductance.T) < 1e-10
+    assert np.abs(conductance.sum(axis=1)).max() < 1e-10 * conductance.diagonal().min()
+
+
 @pytest.mark.parametrize("shape", SHAPES)
 @pytest.mark.parametrize(
     "coefficients",

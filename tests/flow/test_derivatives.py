@@ -48,6 +48,17 @@ def side_contacts(slip_length: float = 0.0) -> Device:
     return drawn('family = "bar"\nlength = 4\nwidth = 1', places | sides, slip_length)
 
 
+def resisting_plate() -> Device:
+    """The plate with a resistance in every contact.
+
+    Without one, and with intrinsic conduction, a resistance of 1e-10 Ω m already matters at the
+    ends of contacts: no difference could follow it.
+    """
+    plate = holed_plate(0.1)
+    contacts = tuple(replace(contact, resistance=5.0 * UM) for contact in plate.contacts)
+    return replace(plate, contacts=contacts)
+
+
 EVERYTHING = {"intrinsic": 0.3, "field": 0.7, "hall": 0.4, "bulk": 0.2}
 CASES: dict[str, tuple[Device, FluidCoefficients, Ratios | None]] = {
     "bar, no slip": (side_contacts(), fluid(0.3), None),
@@ -60,14 +71,14 @@ CASES: dict[str, tuple[Device, FluidCoefficients, Ratios | None]] = {
         fluid(0.3, intrinsic=0.05, field=0.4, hall=0.3),
         None,
     ),
-    "plate, everything varies": (holed_plate(0.1, 5.0), fluid(0.5, **EVERYTHING), waves),
+    "plate, everything varies": (resisting_plate(), fluid(0.5, **EVERYTHING), waves),
 }
 
 
 @cache
 def solved(name: str) -> FlowSolution:
     device, coefficients, ratios = CASES[name]
-    return solve_device(device, coefficients, degree=3, ratios=ratios)
+    return solve_device(device, coefficients, degree=2, ratios=ratios)
 
 
 @dataclass(frozen=True)
@@ -108,11 +119,11 @@ class Changed:
 def step(name: str, value: float, c: FluidCoefficients) -> float:
     """A small step of a parameter, by its own size or by what is natural where it is zero."""
     natural = {
-        "bulk_viscosity": c.shear_viscosity,
+        # At the ends of contacts little of either matters much.
+        "bulk_viscosity": 0.01 * c.shear_viscosity,
         "hall_viscosity": c.shear_viscosity,
         "magnetic_field": SQUARE * abs(c.charge_density),
-        # Little matters to the current that crowds at the ends of a contact.
-        "contact_resistance": 0.05 * SQUARE * UM,
+        "contact_resistance": 0.005 * SQUARE * UM,
         "friction": c.shear_viscosity / UM**2,
     }
     return 2e-3 * (abs(value) or natural[name.partition(".")[0]])
@@ -145,13 +156,14 @@ def test_derivatives_are_those_of_full_solves(case):
         ends = [changed.at(name, value + n * h) for n in (-2, -1, 1, 2)]
         matrix = slope(ends, h)
         size = np.abs(matrix).max()
-        assert found.matrices[name] == pytest.approx(matrix, rel=0, abs=1e-6 * size), name
+        rounding = 1e-12 * np.abs(flows.conductance).max() / h
+        within = 1e-6 * size + rounding
+        assert found.matrices[name] == pytest.approx(matrix, rel=0, abs=within), name
         assert np.abs(found.matrices[name].sum(axis=0)).max() < 1e-9 * size
         assert np.abs(found.matrices[name].sum(axis=1)).max() < 1e-8 * size
         reading = slope([four_terminal(end, current, voltage) for end in ends], h)
-        # What a change of the matrix as a whole does to the reading is the yardstick.
-        yardstick = four_terminal(flows.conductance, current, current) ** 2 * size
-        assert readings[name] == pytest.approx(reading, rel=1e-6, abs=1e-8 * yardstick), name
+        whole = four_terminal(flows.conductance, current, current)
+        assert readings[name] == pytest.approx(reading, rel=1e-6, abs=1e-12 * whole / h)
         compared += 1
     assert compared >= 9
 

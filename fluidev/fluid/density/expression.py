@@ -14,7 +14,7 @@ from fractions import Fraction
 
 import numpy as np
 
-from fluidev.case.names import suggestion
+from fluidev.case.names import nearest
 from fluidev.case.table import path
 from fluidev.case.units import parse_number, parse_quantity
 from fluidev.case.words import describe, written
@@ -90,7 +90,10 @@ def _parameters(
             expected = f"{name} has a meaning of its own in a formula; expected another name"
             raise CaseError(key, written(value), expected, place.file)
         if name not in used:
-            expected = f"is not in the formula; {suggestion(name, [*_RESERVED, *sorted(used)])}"
+            near = nearest(name, [*_RESERVED, *sorted(used)])
+            expected = (
+                f"is not in the formula; {f'did you mean {near!r}?' if near else 'leave it out'}"
+            )
             raise CaseError(key, written(value), expected, place.file)
         try:
             found[name] = _parameter(value)

@@ -82,4 +82,5 @@ def with_puddles(density: Density, table: object, place: Place) -> Density:
     def profile(points: np.ndarray) -> np.ndarray:
         return waves.at(points) + (reference if under is None else under(points))
 
-    return Density(reference, profile, density.domain, density.key, density.digests)
+    key = density.key if density.domain is not None else place.where
+    return Density(reference, profile, density.domain, key, density.digests)

@@ -1,0 +1,74 @@
+"""Over what a fluid ranges in a device: densities, and the lengths that a mesh has to resolve.
+
+Nothing heavy is imported, since this also finds densities that cannot be used.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from fluidev.fluid.fluid import Fluid
+from fluidev.fluid.ratios import LocalRatios
+from fluidev.geometry.device import Device
+from fluidev.geometry.interior import boundary_points, interior
+
+# Sample points along the longer side of a device, and along as much of its boundary.
+ACROSS, ALONG = 160, 256
+
+
+@dataclass(frozen=True)
+class Spread:
+    """What a fluid ranges over at some points of a device; numbers are over the reference's.
+
+    lowest, highest: the least and the largest charge density. lowest_at: (x, y) in m of the least.
+    gurzhi: the least Gurzhi length; layer: the least thickness √(η σ_Q)/|ρ| of an intrinsic layer.
+    """
+
+    lowest: float = np.inf
+    highest: float = -np.inf
+    lowest_at: tuple[float, float] = (np.nan, np.nan)
+    gurzhi: float = np.inf
+    layer: float = np.inf
+
+    def with_points(self, points: np.ndarray, at: LocalRatios) -> Spread:
+        """The spread with the ratios at more points (2, n) in m."""
+        density = np.asarray(at.charge_density)
+        if not density.size:
+            return self
+        shear = np.asarray(at.shear_viscosity)
+        least = int(np.argmin(density))
+        lowest, where = self.lowest, self.lowest_at
+        if density[least] < lowest:
+            lowest = float(density[least])
+            where = (float(points[0, least]), float(points[1, least]))
+        size = np.maximum(np.abs(density), np.finfo(float).tiny)
+        return Spread(
+            lowest,
+            max(self.highest, float(density.max())),
+            where,
+            min(self.gurzhi, float(np.sqrt(np.min(shear / at.friction)))),
+            min(self.layer, float(np.min(np.sqrt(shear) / size))),
+        )
+
+
+def spread_of(device: Device, fluid: Fluid) -> Spread:
+    """The spread of a fluid whose density varies, at points all over the device.
+
+    Raises CaseError where the density is no number.
+    """
+    import shapely
+
+    assert fluid.ratios is not None
+    region = interior(device)
+    x0, y0, x1, y1 = region.bounds
+    size = max(x1 - x0, y1 - y0)
+    edge = boundary_points(device, size / ALONG)
+    found = Spread().with_points(edge, fluid.ratios(edge))
+    columns, rows = (int(np.ceil(ACROSS * span / size)) for span in (x1 - x0, y1 - y0))
+    x = x0 + (x1 - x0) * (np.arange(columns) + 0.5) / columns
+    y = y0 + (y1 - y0) * (np.arange(rows) + 0.5) / rows
+    points = np.array(np.meshgrid(x, y)).reshape(2, -1)
+    points = points[:, shapely.contains_xy(region, *points)]
+    return found.with_points(points, fluid.ratios(points))
