@@ -201,7 +201,7 @@ def solve_case(case: Case) -> Flow:
         mesh = mesh_of(parts)
         step.say("solving")
         if case.tolerance is None or not case.readings:
-            solution, shares = _solve_twice(parts, mesh)
+            solution, shares = solve_twice(parts, mesh)
         else:
             names = [contact.name for contact in parts.device.contacts]
             readings = [
@@ -215,7 +215,7 @@ def solve_case(case: Case) -> Flow:
                 lambda extra, sharper: (
                     mesh if extra is None else mesh_of(parts, extra=extra, sharper=sharper)
                 ),
-                lambda finer: _solve_twice(parts, finer),
+                lambda finer: solve_twice(parts, finer),
                 readings,
                 case.tolerance,
                 say=step.say,
@@ -230,7 +230,7 @@ def solve_case(case: Case) -> Flow:
     return Flow(case, fluid, solution, shares, ohmic, shortfall)
 
 
-def _solve_twice(parts: Parts, mesh: DeviceMesh) -> tuple[FlowSolution, ErrorShares]:
+def solve_twice(parts: Parts, mesh: DeviceMesh) -> tuple[FlowSolution, ErrorShares]:
     """The solution on a mesh and the shares of its error, from one of the next degree."""
     coefficients, ratios = parts.fluid.coefficients, parts.fluid.ratios
     assert mesh.skfem.t.size  # made once, before two threads ask for it

@@ -21,7 +21,14 @@ def drawn(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> list[dict[str, Any
         return [Path("one.png"), Path("two.vtu")]
 
     monkeypatch.setattr("fluidev.api.solve", made_up_flow)
+
+    def write_sensitivity_maps(flow: object, reading: str, folder: Path, pdf: bool) -> list[Path]:
+        calls.append({"reading": reading, "folder": folder, "pdf": pdf})
+        return [Path("from.png")]
+
     monkeypatch.setattr("fluidev.readout.maps.write_maps", write_maps)
+    sensitivity_maps = "fluidev.readout.sensitivity_maps.write_sensitivity_maps"
+    monkeypatch.setattr(sensitivity_maps, write_sensitivity_maps)
     monkeypatch.chdir(tmp_path)
     (tmp_path / "bar.toml").write_text(BAR, "utf-8")
     return calls
@@ -39,6 +46,21 @@ def test_the_drawing_gets_what_was_asked(
     ]
 
 
+def test_where_a_reading_comes_from_is_drawn_alone_or_with_a_flow(
+    drawn: list[dict[str, Any]], capsys: pytest.CaptureFixture[str]
+) -> None:
+    assert main(["map", "bar.toml", "--reading", "to the probe"]) == 0
+    assert capsys.readouterr() == ("from.png\n", "")
+    words = ["--reading", "two-terminal", "--current", "S", "D", "--pdf", "--out", "a"]
+    assert main(["map", "bar.toml", *words]) == 0
+    assert capsys.readouterr() == ("one.png\ntwo.vtu\nfrom.png\n", "")
+    assert drawn == [
+        {"reading": "to the probe", "folder": Path("bar.map"), "pdf": False},
+        {"current": ("S", "D"), "folder": Path("a"), "pdf": True},
+        {"reading": "two-terminal", "folder": Path("a"), "pdf": True},
+    ]
+
+
 @pytest.mark.parametrize(
     ("arguments", "sentence"),
     [
@@ -48,6 +70,12 @@ def test_the_drawing_gets_what_was_asked(
         ),
         (["--current", "s", "D"], "bar.toml: --current = 's D': there is no contact 's'; did you"),
         (["--current", "S", "S"], "bar.toml: --current = 'S S': expected two different contacts"),
+        (
+            ["--reading", "to the prob"],
+            "bar.toml: --reading = 'to the prob': there is no reading 'to the prob'; did you mean",
+        ),
+        (["--current", "S", "D", "--reading", "x"], "bar.toml: --reading = 'x': there is no rea"),
+        ([], "expected --current IN OUT, --reading NAME or both; see fluidev map --help"),
         (["--current", "S", "D", "--out", "bar.toml"], "--out = 'bar.toml"),
     ],
 )

@@ -81,8 +81,7 @@ def test_lengths_times_a_at_fixed_squares_change_nothing(factor, gurzhi_length, 
         3,
         LIGHT,
     )
-    # Meshes may differ where rounding decides, conductances by what the mesh gets wrong then.
-    assert far(one.conductance, other.conductance) < 1e-4
+    assert far(one.conductance, other.conductance) < 1e-9
 
 
 @FEW
@@ -129,70 +128,84 @@ def test_only_ratios_to_the_squared_density_count(factor, gurzhi_length):
     entry=entries,
     gurzhi_length=gurzhi_lengths,
 )
-def test_a_mirror_image_conducts_alike(x, y, slip_length, entry, gurzhi_length):
+def test_a_mirror_image_conducts_alike_in_the_reversed_field(
+    x, y, slip_length, entry, gurzhi_length
+):
+    """On the mirrored mesh to rounding."""
     points = plate_points(x, y)
-    mirrored = [(-px, py) for px, py in points]
+    one = plate(points, slip_length, entry)
+    two = plate([(-px, py) for px, py in points], slip_length, entry)
     c = fluid(gurzhi_length, intrinsic=0.02, field=0.5, hall=0.2)
     back = replace(c, magnetic_field=-c.magnetic_field, hall_viscosity=-c.hall_viscosity)
-    one = solve_device(plate(points, slip_length, entry), c, 5)
-    two = solve_device(plate(mirrored, slip_length, entry), back, 5)
-    # The meshes differ: what is compared is the accuracy of both, and the sense of the field.
-    assert far(one.conductance, two.conductance) < ACCURATE
-    if not math.isinf(slip_length):
-        wrong = solve_device(plate(mirrored, slip_length, entry), c, 3, LIGHT)
-        assert far(one.conductance, wrong.conductance) > 1e-3
-
-
-# Two meshes of one device at degree 5 agree to this; walls and contacts at any angle do not matter.
-ACCURATE = 2e-3
+    mesh = mesh_device(one, settings=LIGHT)
+    image = moved(mesh, two, np.diag([-1.0, 1.0]))
+    conductance = solve_device(one, c, 3, mesh=mesh).conductance
+    assert far(conductance, solve_device(two, back, 3, mesh=image).conductance) < 1e-9
+    assert far(conductance, solve_device(two, c, 3, mesh=image).conductance) > 1e-3
 
 
 @FEW
 @given(angle=angles, slip_length=slip_lengths, entry=entries, gurzhi_length=gurzhi_lengths)
 def test_a_turned_device_conducts_alike(angle, slip_length, entry, gurzhi_length):
-    """On the same mesh, turned, the conductances agree to rounding: walls may be slanted."""
+    """On the turned mesh to rounding, whatever the direction of its walls and contacts."""
     straight = plate(plate_points(1.8, 1.3), slip_length, entry)
     slanted = plate(turned(plate_points(1.8, 1.3), angle), slip_length, entry)
     c = fluid(gurzhi_length, intrinsic=0.02, field=0.5, hall=0.2, bulk=0.4)
     mesh = mesh_device(straight, settings=LIGHT)
+    a = math.radians(angle)
+    turn = np.array([[math.cos(a), -math.sin(a)], [math.sin(a), math.cos(a)]])
     one = solve_device(straight, c, 3, mesh=mesh).conductance
-    two = solve_device(slanted, c, 3, mesh=_turned_mesh(mesh, slanted, angle)).conductance
-    assert far(one, two) < 1e-8
+    two = solve_device(slanted, c, 3, mesh=moved(mesh, slanted, turn)).conductance
+    assert far(one, two) < 1e-9
 
 
-@settings(FEW, max_examples=2)
+@settings(FEW, max_examples=3)
 @given(angle=angles, gurzhi_length=gurzhi_lengths)
 def test_a_turned_device_meshed_anew_conducts_alike(angle, gurzhi_length):
-    """A channel is smooth: there two meshes agree closely."""
-    corners = [(0, 0), (2, 0), (2, 1), (0, 1)]
+    """Where the flow is smooth two meshes agree closely."""
+    corners = [(0.0, 0.0), (2.0, 0.0), (2.0, 1.0), (0.0, 1.0)]
 
-    def channel(points):
-        places = {"S": f"edge = [{points[3]}, {points[0]}]", "D": f"edge = [{points[1]}, {points[2]}]"}
-        return device(f"outline = {points}", places, 0.3)
+    def channel(p):
+        places = {"S": f"edge = [{p[3]}, {p[0]}]", "D": f"edge = [{p[1]}, {p[2]}]"}
+        return device(f"outline = {p}", places, 0.3)
 
-    straight = channel([list(map(float, p)) for p in corners])
+    straight = channel([list(p) for p in corners])
     slanted = channel(turned(corners, angle))
     c = fluid(gurzhi_length)
     one, two = (solve_device(shape, c).conductance for shape in (straight, slanted))
     assert far(one, two) < 1e-6
 
 
-def _turned_mesh(mesh: DeviceMesh, slanted: Device, degrees: float) -> DeviceMesh:
-    """The mesh of a device turned round the origin along with it."""
-    a = math.radians(degrees)
-    turn = np.array([[math.cos(a), -math.sin(a)], [math.sin(a), math.cos(a)]])
+@settings(FEW, max_examples=2)
+@given(angle=angles, entry=entries)
+def test_contact_ends_turned_and_meshed_anew_agree_as_well_as_they_are_resolved(angle, entry):
+    """Singular points limit each mesh; two of them differ by no more than that."""
+    straight = plate(plate_points(1.8, 1.3), 0.0, entry)
+    slanted = plate(turned(plate_points(1.8, 1.3), angle), 0.0, entry)
+    one, two = (solve_device(shape, fluid(0.5), 5).conductance for shape in (straight, slanted))
+    assert far(one, two) < RESOLVED
+
+
+# Conductances of one device on two default meshes, fifth order, differ by less than this.
+RESOLVED = 1e-3
+
+
+def moved(mesh: DeviceMesh, image: Device, turn: np.ndarray) -> DeviceMesh:
+    """The mesh of a device under an orthogonal map (2, 2) that makes `image` of the device."""
+
+    def keys(shape: Device) -> list[tuple[object, ...]]:
+        return [
+            (s.contact, s.wall, round(s.curve.length / mesh.scale, 6))
+            for loop in shape.loops
+            for s in loop
+        ]
+
+    where = {key: i for i, key in enumerate(keys(image))}  # counted from another stretch, maybe
+    assert len(where) == len(mesh.stretches)
+    order = np.array([where[key] for key in keys(mesh.device)])
     t = mesh.triangulation
-    triangulation = replace(t, nodes=t.nodes @ turn.T)
-    where = {
-        (s.contact, s.wall, round(s.curve.length / mesh.scale, 6)): i
-        for i, s in enumerate(s for loop in slanted.loops for s in loop)
-    }
-    # Stretches of the turned device may be counted from another one.
-    order = [
-        where[(s.contact, s.wall, round(s.curve.length / mesh.scale, 6))] for s in mesh.stretches
-    ]
-    triangulation = replace(triangulation, stretch=np.array(order)[t.stretch])
-    return replace(mesh, device=slanted, triangulation=triangulation, origin=turn @ mesh.origin)
+    t = replace(t, nodes=t.nodes @ turn.T, stretch=order[t.stretch])
+    return replace(mesh, device=image, triangulation=t, origin=turn @ mesh.origin)
 
 
 @FEW
@@ -258,8 +271,6 @@ def test_a_contact_split_in_two_and_joined_again_is_the_same(share, gurzhi_lengt
     With σ_Q the current between them has no bound as the mesh is refined, so that case files
     refuse contacts that touch; the sum of both is still that of one contact.
     """
-    whole = wired(plate(plate_points(1.8, 1.3), 0.2, entry, "WES"), 0, 0) if False else None
-    assert whole is None
     one = plate(plate_points(1.8, 1.3), 0.2, entry)
     loops = []
     for loop in one.loops:
@@ -277,12 +288,11 @@ def test_a_contact_split_in_two_and_joined_again_is_the_same(share, gurzhi_lengt
     apart = solve_device(two, c, 3, mesh=mesh).conductance
     back = replace(mesh, device=wired(two, 1, 3))
     same_mesh = solve_device(back.device, c, 3, mesh=back).conductance
-    assert apart[1, 3] < 0.0
     assert far(joined(apart, 1, 3), same_mesh) < 1e-10
     # The one contact has a mesh of its own: the two agree as well as each is accurate.
     own = solve_device(one, c, 5).conductance
     fine = solve_device(two, c, 5).conductance
-    assert far(joined(fine, 1, 3), own) < ACCURATE
+    assert far(joined(fine, 1, 3), own) < RESOLVED
 
 
 @FEW
@@ -298,7 +308,8 @@ def test_power_is_positive_and_equals_what_is_turned_into_heat(
     gurzhi_length, slip_length, intrinsic, field, entry, volts
 ):
     c = fluid(gurzhi_length, intrinsic=intrinsic, field=field, hall=0.5 * field, bulk=0.2)
-    for shape, tolerance in ((plate(plate_points(2.0, 1.0), slip_length, entry), 1e-10), (disk(entry, slip_length), 1e-6)):
+    straight, round_one = plate(plate_points(2.0, 1.0), slip_length, entry), disk(entry, slip_length)
+    for shape, tolerance in ((straight, 1e-10), (round_one, 1e-6)):
         solution = solve_device(shape, c, 3, LIGHT)
         power = np.linalg.eigvalsh(solution.conductance + solution.conductance.T)
         assert power[0] > -1e-10 * power[-1]  # equal potentials everywhere
