@@ -14,6 +14,9 @@ from fluidev.errors import NumericsError
 
 # Largest relative residual (row by row, against |K||x| + |b|) that is not remarked upon.
 _RESIDUAL = 1e-10
+# Entries of a balanced matrix below this are cancellation, such as the inner part of
+# ∂_x N_i ∂_y N_j − ∂_y N_i ∂_x N_j for a uniform viscosity.
+_ZERO = 1e-16
 # A residual below this is as good as rounding lets it be.
 _GOOD = 1e-13
 
@@ -43,8 +46,9 @@ class Factor:
         scale = scale.max(axis=0, keepdims=True) + np.finfo(float).tiny
         residual = loads - matrix @ found
         size = float((np.abs(residual) / scale).max())
-        for _ in range(3):
-            if size < _GOOD:
+        for step in range(3):
+            # One step always: a weak nonlocal reading is a difference of large currents.
+            if step and size < _GOOD:
                 break
             better = found + self._once(residual, transposed)
             residual_then = loads - matrix @ better
@@ -81,6 +85,8 @@ def factorise(matrix: sp.csc_array, order: np.ndarray) -> Factor:
     balance = _balance(matrix)
     scale = sp.diags_array(balance)
     balanced = sp.csc_array(scale @ matrix @ scale)
+    balanced.data[np.abs(balanced.data) < _ZERO] = 0.0
+    balanced.eliminate_zeros()
     turned = sp.csc_array(balanced[order][:, order])
     try:
         lu = splu(
@@ -90,7 +96,10 @@ def factorise(matrix: sp.csc_array, order: np.ndarray) -> Factor:
             options={"SymmetricMode": True},
         )
     except RuntimeError as error:
-        raise NumericsError(f"the flow equations are singular ({error})") from error
+        raise NumericsError(
+            f"the equations are singular ({error}): either nothing limits the flow (no friction "
+            "and walls that do not hold the fluid) or a part of the device is cut off"
+        ) from error
     return Factor(balanced, balance, order, lu)
 
 

@@ -52,7 +52,8 @@ def parts_of(case: Case) -> Parts:
     _refuse_uncovered(device, density, blame)
     try:
         found = spread_of(device, fluid)
-        if found.lowest <= 0.0 and fluid.rounded is not None:
+        intrinsic = fluid.coefficients.intrinsic_conductivity > 0.0
+        if found.vanishing and intrinsic and fluid.rounded is not None:
             fluid = replace(fluid, ratios=fluid.rounded)
             found = spread_of(device, fluid)
     except CaseError as mistake:

@@ -2,60 +2,84 @@
 
 from __future__ import annotations
 
+from typing import Protocol
+
 import numpy as np
 
 from fluidev.errors import NumericsError
-from fluidev.flow.blocks import Blocks
+from fluidev.flow.space import FlowSpace
 from fluidev.flow.weights import Weights
 
-_INSIDE = 1e4  # how much more closely charge is watched inside than at the boundary
 _NAMES = ("slide along x", "slide along y", "turn as a rigid body")
+# A unit force along a motion that nothing holds gives a flow limited by rounding alone. A real
+# device, however slippery, stays far below this.
+_BOUNDLESS = 1e11
 
 
-def refuse_rigid_motion(blocks: Blocks, weights: Weights) -> None:
-    """Raises NumericsError where a rigid motion meets no resistance and carries no charge change.
+class Solver(Protocol):
+    """Whatever solves the flow equations for loads that vanish inside elements."""
 
-    Such a motion passes every wall and contact condition, dissipates nothing (no friction, no
-    wall slip, no field with intrinsic conduction) and is divergence-free in charge, so the flow has
-    either no resistance at all or no steady state.
+    @property
+    def inside(self) -> np.ndarray:
+        """Free unknowns that take no load."""
+        ...
+
+    def solve(self, loads: np.ndarray) -> np.ndarray:
+        """Solutions for loads (nf + np, m)."""
+        ...
+
+
+def refuse_rigid_motion(space: FlowSpace, system: Solver) -> None:
+    """Raises NumericsError where pushing the fluid as a rigid body meets no resistance.
+
+    That is the case where a rigid motion passes every wall and contact condition, carries no charge
+    anywhere and is not braked by friction, slip or a field; there is then no finite resistance, or
+    no steady state. The equations themselves are asked: a force along each motion is applied.
     """
-    space = blocks.space
-    if weights.friction or any(weights.walls) or (weights.intrinsic and weights.field):
+    motions = _motions(space)
+    push = np.zeros((space.unknowns, 3))
+    push[: space.frames.count] = space.prolongation.T @ motions
+    push[system.inside.ravel()] = 0.0
+    size = np.sqrt((push**2).sum(axis=0))
+    push /= np.where(size > 0, size, 1.0)
+    answer = push.T @ system.solve(push)
+    _, sizes, directions = np.linalg.svd(answer)
+    loose = directions[~(sizes < _BOUNDLESS)]
+    if len(loose):
+        heavy = np.abs(loose).max(axis=0) > 0.1
+        which = " and ".join(name for name, there in zip(_NAMES, heavy, strict=True) if there)
+        raise NumericsError(boundless(which))
+
+
+def refuse_lost_torque(space: FlowSpace, weights: Weights, conductance: np.ndarray) -> None:
+    """Raises NumericsError where a field turns a fluid that nothing holds until no current flows.
+
+    On a ring or disk between contacts with free entry a current in a field makes a torque that
+    nothing balances: the fluid spins up until its own back voltage stops the current.
+    conductance: (N, N) times weights.unit.
+    """
+    if not weights.field or weights.friction or any(weights.walls):
         return
-    if any(
-        wall.slip_length == 0 and space.mesh.stretches_of_wall(i)
-        for i, wall in enumerate(space.mesh.device.walls)
-    ):
-        return
-    if any(weights.contacts):
-        return
+    turning = _motions(space)[:, 2]
+    lost = turning - space.prolongation @ (space.prolongation.T @ turning)
+    if np.abs(lost).max() < 1e-6 * np.abs(turning).max() and np.abs(conductance).max() < 1e-6:
+        raise NumericsError(boundless(_NAMES[2]))
+
+
+def _motions(space: FlowSpace) -> np.ndarray:
+    """The two slides and the turn as nodal velocities, (2·nv, 3)."""
     at = space.velocity.doflocs - space.velocity.doflocs.mean(axis=1, keepdims=True)
     one, none = np.ones(space.nodes), np.zeros(space.nodes)
-    motions = np.stack(
+    return np.stack(
         [np.concatenate([one, none]), np.concatenate([none, one]), np.concatenate([-at[1], at[0]])],
         axis=1,
     )
-    free = space.prolongation.T @ motions
-    lost = motions - space.prolongation @ free
-    charge = blocks.coupling.T @ free
-    scale = abs(blocks.coupling).T @ np.abs(free)
-    # A motion is free where nothing of it is lost to constraints and no charge piles up. On curved
-    # walls the latter holds as well as the elements follow the wall, hence no tighter threshold;
-    # inside it holds to rounding, and a charge density that varies a little somewhere breaks it.
-    charge /= max(float(scale.max()), 1e-300)
-    inside = np.setdiff1d(np.arange(space.potentials), space.potential.get_dofs().flatten())
-    charge[inside] *= _INSIDE
-    measure = np.concatenate([lost, charge])
-    _, sizes, directions = np.linalg.svd(measure, full_matrices=False)
-    loose = directions[sizes < 1e-3 * np.sqrt(space.nodes)]
-    if len(loose):
-        which = " and ".join(
-            name
-            for name, weight in zip(_NAMES, np.abs(loose).max(axis=0), strict=True)
-            if weight > 0.1
-        )
-        raise NumericsError(
-            f"without friction and with walls that do not hold it the fluid can {which}: nothing "
-            "limits the flow, so there is no finite resistance or no steady state; give the walls "
-            "a finite slip length, a contact normal entry, or the fluid some friction"
-        )
+
+
+def boundless(which: str) -> str:
+    """What to say where the fluid can move freely."""
+    return (
+        f"without friction and with walls that do not hold it the fluid can {which}: nothing "
+        "limits the flow, so there is no finite resistance or no steady state; give the walls "
+        "a finite slip length, a contact normal entry, or the fluid some friction"
+    )

@@ -17,7 +17,6 @@ from fluidev.flow.flow import Estimate, FlowSolution, contact_potentials, four_t
 from fluidev.flow.meshes import layer_lengths, mesh_of
 from fluidev.flow.ohmic import ohmic_conductance
 from fluidev.flow.parts import Parts, parts_of
-from fluidev.flow.rigid import refuse_rigid_motion
 from fluidev.flow.space import FlowSpace
 from fluidev.flow.system import solve
 from fluidev.flow.weights import weigh
@@ -182,7 +181,6 @@ def solve_device(
         mesh = mesh_device(device, *layer_lengths(coefficients), settings)
     blocks = assemble(FlowSpace(mesh, degree), ratios)
     weights = weigh(coefficients, device, mesh.scale)
-    refuse_rigid_motion(blocks, weights)
     solution = solve(blocks, weights)
     names = tuple(contact.name for contact in device.contacts)
     return FlowSolution(names, blocks, weights, coefficients, solution)

@@ -5,7 +5,7 @@ Nothing heavy is imported, since this also finds densities that cannot be used.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -24,6 +24,7 @@ class Spread:
 
     lowest, highest: the least and the largest charge density. lowest_at: (x, y) in m of the least.
     gurzhi: the least Gurzhi length; layer: the least thickness √(η σ_Q)/|ρ| of an intrinsic layer.
+    vanishing: whether the charge density is zero somewhere, or looks so from the points.
     """
 
     lowest: float = np.inf
@@ -31,6 +32,7 @@ class Spread:
     lowest_at: tuple[float, float] = (np.nan, np.nan)
     gurzhi: float = np.inf
     layer: float = np.inf
+    vanishing: bool = False
 
     def with_points(self, points: np.ndarray, at: LocalRatios) -> Spread:
         """The spread with the ratios at more points (2, n) in m."""
@@ -44,12 +46,13 @@ class Spread:
             lowest = float(density[least])
             where = (float(points[0, least]), float(points[1, least]))
         size = np.maximum(np.abs(density), np.finfo(float).tiny)
-        return Spread(
-            lowest,
-            max(self.highest, float(density.max())),
-            where,
-            min(self.gurzhi, float(np.sqrt(np.min(shear / at.friction)))),
-            min(self.layer, float(np.min(np.sqrt(shear) / size))),
+        return replace(
+            self,
+            lowest=lowest,
+            highest=max(self.highest, float(density.max())),
+            lowest_at=where,
+            gurzhi=min(self.gurzhi, float(np.sqrt(np.min(shear / at.friction)))),
+            layer=min(self.layer, float(np.min(np.sqrt(shear) / size))),
         )
 
 
@@ -69,6 +72,24 @@ def spread_of(device: Device, fluid: Fluid) -> Spread:
     columns, rows = (int(np.ceil(ACROSS * span / size)) for span in (x1 - x0, y1 - y0))
     x = x0 + (x1 - x0) * (np.arange(columns) + 0.5) / columns
     y = y0 + (y1 - y0) * (np.arange(rows) + 0.5) / rows
-    points = np.array(np.meshgrid(x, y)).reshape(2, -1)
-    points = points[:, shapely.contains_xy(region, *points)]
-    return found.with_points(points, fluid.ratios(points))
+    points = np.array(np.meshgrid(x, y))
+    inside = shapely.contains_xy(region, *points)
+    points = points[:, inside]
+    at = fluid.ratios(points)
+    density = np.full(inside.shape, np.nan)
+    density[inside] = at.charge_density
+    return replace(found.with_points(points, at), vanishing=_vanishes(density))
+
+
+def _vanishes(density: np.ndarray) -> bool:
+    """Whether values on a grid (nan outside) seem to go through zero, or to touch it, between them.
+
+    Between neighbours they then change by more than what they are at the smaller one.
+    """
+    for axis in (0, 1):
+        step = np.abs(np.diff(density, axis=axis))
+        size = np.abs(density)
+        least = np.minimum(np.delete(size, 0, axis), np.delete(size, -1, axis))
+        if np.any(step > least):
+            return True
+    return bool(np.any(density == 0.0))

@@ -27,10 +27,12 @@ MOST_CELLS = 8000
 SLOPE = 0.75
 # … and bend away from a straight line by this share.
 BEND = 0.1
-# The same for the viscosity, which only matters where it falls below this share of what it is.
-DEEP = 0.15
+# The same for the viscosity, where the density changes sign or falls to less than this share.
+DEEP = 0.3
 DRAG_SLOPE = 1.2
 DRAG_BEND = 1.0
+# Cells need not be smaller than this share of the length over which intrinsic conduction smooths.
+SMOOTHED = 0.25
 # A range below this share of the reference is none.
 FLAT = 1e-9
 
@@ -109,10 +111,12 @@ def _rough(
     scale = np.minimum(span, here + natural)
     rough = (slope > SLOPE * scale) | (bend > BEND * scale)
     # Where intrinsic conduction smooths the flow a sharper density need not be followed, …
-    rough &= sizes > smoothing / np.maximum(here, np.finfo(float).tiny)
+    rough &= sizes > SMOOTHED * smoothing / np.maximum(here, np.finfo(float).tiny)
     # … unless the two sides of a line of few carriers drag each other across it.
     slope, bend = _change(viscosity)
-    deep = np.where(inside, at.shear_viscosity, np.inf).min(axis=(1, 2)) < DEEP * momentum
+    low = np.where(inside, at.charge_density, np.inf).min(axis=(1, 2))
+    high = np.where(inside, at.charge_density, -np.inf).max(axis=(1, 2))
+    deep = np.maximum(low, -high) < DEEP * here
     return np.asarray(
         rough | deep & ((slope > DRAG_SLOPE * momentum) | (bend > DRAG_BEND * momentum))
     )

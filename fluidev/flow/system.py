@@ -10,11 +10,8 @@ import scipy.sparse as sp
 from fluidev.flow.blocks import Blocks, coupling_matrix, turned, velocity_matrix
 from fluidev.flow.contacts import ContactForm, contact_form
 from fluidev.flow.factor import Factor, factorise
+from fluidev.flow.rigid import refuse_lost_torque, refuse_rigid_motion
 from fluidev.flow.weights import Weights
-
-# Entries smaller than this against the largest are cancellation, such as the inner part of
-# ∂_x N_i ∂_y N_j − ∂_y N_i ∂_x N_j for a uniform viscosity.
-_ZERO = 1e-16
 
 
 def matrix(blocks: Blocks, weights: Weights, forms: tuple[ContactForm, ...]) -> sp.csc_array:
@@ -61,8 +58,6 @@ def _summed(local: np.ndarray, at: np.ndarray, extra: sp.csr_array, size: int) -
         ),
         shape=(size, size),
     ).tocsc()
-    whole.data[np.abs(whole.data) < _ZERO * np.abs(whole.data).max()] = 0.0
-    whole.eliminate_zeros()
     return whole
 
 
@@ -178,12 +173,14 @@ def solve(blocks: Blocks, weights: Weights) -> Solution:
         for trace, resistance in zip(blocks.contacts, weights.contacts, strict=True)
     )
     system = condense(blocks, weights, forms)
+    refuse_rigid_motion(blocks.space, system)
     loads = np.stack([form.load for form in forms], axis=1)
     states = _completed(system.solve(loads[:, :-1]), blocks.velocities)
     currents = np.stack([form.current for form in forms], axis=1)
     conductance = currents.T @ states
     np.fill_diagonal(conductance, 0.0)
     np.fill_diagonal(conductance, -conductance.sum(axis=0))
+    refuse_lost_torque(blocks.space, weights, conductance)
     mirrored = states
     if weights.field or weights.hall:
         driven = system.solve(currents[:, :-1], transposed=True)

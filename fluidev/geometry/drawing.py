@@ -85,10 +85,11 @@ def _draw(
     points: dict[tuple[float, float], object] = {}
 
     def point(p: Point) -> Any:
-        x, y = (np.asarray(p) - origin) / scale
-        key = (round(float(x), 12), round(float(y), 12))
+        # Rounded, so that the same shape in other units is the same to the mesher.
+        x, y = ((np.asarray(p) - origin) / scale).round(12)
+        key = (float(x), float(y))
         if key not in points:
-            points[key] = geometry.add_point([float(x), float(y), 0.0])
+            points[key] = geometry.add_point([*key, 0.0])
         return points[key]
 
     pieces, owners, loops, index = [], [], [], 0
@@ -122,13 +123,13 @@ def _size_field(gmsh: Any, sources: Sources, growth: float) -> int:
     Sources are gathered in classes of nearly equal size (rounded down), one distance field each.
     """
     field = gmsh.model.mesh.field
-    level = np.floor(np.log(sources.sizes) / math.log(1.25)).astype(int)
+    level = np.floor(np.log(sources.sizes) / math.log(1.25) + 1e-9).astype(int)
     parts = []
     for step in np.unique(level):
         size = 1.25 ** float(step)
         tags = [
             gmsh.model.geo.addPoint(float(x), float(y), 0.0)
-            for x, y in np.unique(sources.points[level == step], axis=0)
+            for x, y in np.unique(sources.points[level == step].round(12), axis=0)
         ]
         gmsh.model.geo.synchronize()
         distance = field.add("Distance")

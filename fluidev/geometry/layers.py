@@ -130,7 +130,8 @@ def fan_out(mesh: Triangulation, vertex: int, widest: float) -> Triangulation:
         others = [(local + 1) % 3, (local + 2) % 3]
         arms = [corner[rows, k] - corner[rows, local] for k in others]
         turn = arms[0][:, 0] * arms[1][:, 1] - arms[0][:, 1] * arms[1][:, 0]
-        angle = np.abs(np.arctan2(turn, (arms[0] * arms[1]).sum(axis=1)))
+        # Rounded, so that equal angles are equal and the same one is taken in any unit.
+        angle = np.abs(np.arctan2(turn, (arms[0] * arms[1]).sum(axis=1))).round(9)
         pairs = np.sort(np.stack([mesh.triangles[touch, k] for k in others], axis=1), axis=1)
         wide = (angle > widest) & ~_isin(pairs[:, 0] * first_count + pairs[:, 1], outer)
         if not wide.any():

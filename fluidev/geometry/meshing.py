@@ -15,6 +15,9 @@ from fluidev.geometry.outline import Arc
 from fluidev.geometry.sizing import corners, local_width, sample_boundary, sides, singular_points
 from fluidev.geometry.sources import SizeField, Sources
 
+# Lengths within this factor are the same length: decisions must not hang on rounding.
+_SAME = 1.0 + 1e-9
+
 
 @dataclass(frozen=True)
 class MeshSettings:
@@ -157,8 +160,8 @@ def _add_layers(
         member[vertex] = True
         if math.isfinite(thickness) and point in corners(device):
             size = _depth(mesh, member, 1)
-            if size > thickness:
-                needed = math.ceil(math.log(thickness / size) / math.log(ratio))
+            if size > thickness * _SAME:
+                needed = math.ceil(math.log(thickness / size) / math.log(ratio) - 1e-9)
                 wanted = max(wanted, min(needed, settings.most_layers))
         for _ in range(wanted):
             mesh = split_toward(mesh, _extended(member, mesh.count), ratio)
@@ -183,7 +186,7 @@ def _corner_layers(exponent: float, ratio: float, settings: MeshSettings) -> int
     needed = math.log(settings.corner_remainder) / (2 * exponent * math.log(ratio))
     # Never so many that the innermost triangles are lost in rounding.
     smallest = math.log(settings.corner_ratio) / math.log(ratio) * settings.most_corner_layers
-    return min(math.ceil(needed), round(smallest))
+    return min(math.ceil(needed - 1e-9), round(smallest))
 
 
 def _boundary_layers(
@@ -201,7 +204,7 @@ def _boundary_layers(
         return mesh
     member = np.zeros(mesh.count, dtype=bool)
     member[mesh.boundary[np.isin(mesh.stretch, side)].ravel()] = True
-    if _depth(mesh, member, 2) <= thickness:
+    if _depth(mesh, member, 2) <= thickness * _SAME:
         return mesh
     mesh = separate(mesh, member)
     for _ in range(settings.most_layers):
@@ -228,7 +231,7 @@ def _deep(
     leap = vertices[far] - vertices[near]
     depth = np.abs(along[near, 0] * leap[:, 1] - along[near, 1] * leap[:, 0])
     deep = np.zeros(mesh.count, dtype=bool)
-    deep[near[depth > thickness]] = True
+    deep[near[depth > thickness * _SAME]] = True
     return deep
 
 

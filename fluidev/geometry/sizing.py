@@ -37,7 +37,7 @@ def sample_boundary(device: Device, spacing: float) -> tuple[np.ndarray, np.ndar
     normals: list[Point] = []
     owner: list[int] = []
     for index, stretch in enumerate(s for loop in device.loops for s in loop):
-        count = max(4, math.ceil(stretch.curve.length / spacing))
+        count = max(4, math.ceil(stretch.curve.length / spacing - 1e-9))
         for i in range(count):
             t = (i + 0.5) / count
             tangent = stretch.curve.tangent(t)

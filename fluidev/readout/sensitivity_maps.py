@@ -203,4 +203,4 @@ def _rest(solution: FlowSolution) -> str:
         "intrinsic conduction": weights.intrinsic,
         "field": weights.field,
     }
-    return ", ".join(name for name, there in causes.items() if there) or "the rest"
+    return " and ".join(name for name, there in causes.items() if there) or "the rest"

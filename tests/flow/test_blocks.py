@@ -53,35 +53,39 @@ def test_symmetric_and_antisymmetric_blocks(ratios):
         assert abs(block - block.T).max() < 1e-14 * abs(block).max()
 
 
+def nodes(blocks: Blocks) -> np.ndarray:
+    """Velocity nodes (2, nv) in mesh lengths from the origin of the device's own coordinates."""
+    mesh = blocks.space.mesh
+    return blocks.space.velocity.doflocs + (mesh.origin / mesh.scale)[:, None]
+
+
 @pytest.mark.parametrize("make", [lambda: annulus(entry="free"), lambda: half_ring(math.inf)])
 def test_a_rigid_turn_has_no_viscous_stress(make):
     blocks = blocks_of(make(), 4)
-    x, y = blocks.space.velocity.doflocs + (blocks.space.mesh.origin / blocks.space.mesh.scale)[
-        :, None
-    ]
-    turn = free(blocks, -y, x) if make().walls[0].slip_length else None
-    if turn is None:
-        # Free entry holds nothing on either rim, so any velocity may be tried.
-        turn = free(blocks, -y, x)
-        stretch = free(blocks, x, -y)
-        assert stretch @ (blocks.viscous @ stretch) > 1.0
-        assert np.abs(blocks.bulk @ stretch).max() < 1e-9
-        swell = free(blocks, x, y)
-        # ∇·u = 2 and no shear.
-        area = blocks.space.velocity.dx.sum()
-        assert swell @ (blocks.bulk @ swell) == pytest.approx(4 * area)
-        assert np.abs(blocks.viscous @ swell).max() < 1e-9
-        # 2 (ε − ½ ∇·u) : ε = 4 for u = (x, −y).
-        assert stretch @ (blocks.viscous @ stretch) == pytest.approx(4 * area)
-        # σ'_H of (x, −y) is −2 η_H off the diagonal; tested with (y, x): ε_xy = 1.
-        shear = free(blocks, y, x)
-        assert shear @ (blocks.hall @ stretch) == pytest.approx(-4 * area)
-        assert stretch @ (blocks.hall @ shear) == pytest.approx(4 * area)
+    x, y = nodes(blocks)
+    turn = free(blocks, -y, x)
     for name in ("viscous", "bulk", "hall"):
         assert np.abs(getattr(blocks, name) @ turn).max() < 1e-9
     inertia = (blocks.space.velocity.dx * np.sum(_at(blocks) ** 2, axis=0)).sum()
     assert turn @ (blocks.friction @ turn) == pytest.approx(inertia, rel=1e-9)
     assert np.abs(blocks.coupling.T @ turn).max() < 1e-7  # no charge piles up
+
+
+def test_stresses_of_linear_flows():
+    blocks = blocks_of(annulus(entry="free"), 4)  # free entry holds nothing on either rim
+    x, y = nodes(blocks)
+    area = blocks.space.velocity.dx.sum()
+    stretch, shear, swell = free(blocks, x, -y), free(blocks, y, x), free(blocks, x, y)
+    # 2 (ε − ½ ∇·u) : ε with ε = diag(1, −1).
+    assert stretch @ (blocks.viscous @ stretch) == pytest.approx(4 * area)
+    assert shear @ (blocks.viscous @ shear) == pytest.approx(4 * area)
+    assert np.abs(blocks.bulk @ stretch).max() < 1e-9
+    # ∇·u = 2 and no shear.
+    assert swell @ (blocks.bulk @ swell) == pytest.approx(4 * area)
+    assert np.abs(blocks.viscous @ swell).max() < 1e-9
+    # σ'_H of (x, −y) is −2 η_H off the diagonal, that of (y, x) is 2 η_H on it.
+    assert shear @ (blocks.hall @ stretch) == pytest.approx(-4 * area)
+    assert stretch @ (blocks.hall @ shear) == pytest.approx(4 * area)
 
 
 def _at(blocks: Blocks) -> np.ndarray:

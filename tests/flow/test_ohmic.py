@@ -88,7 +88,9 @@ def test_the_tensor_solves_the_local_balance(field, intrinsic, sign):
     cross = b * np.array([[0.0, 1.0], [-1.0, 0.0]])  # a×B
     eye = np.eye(2)
     # (k − ρ× − σ××) u = (ρ + σ×) E
-    mobility = np.linalg.solve(k * eye - rho * cross - sigma * cross @ cross, rho * eye + sigma * cross)
+    mobility = np.linalg.solve(
+        k * eye - rho * cross - sigma * cross @ cross, rho * eye + sigma * cross
+    )
     expected = rho * mobility + sigma * (eye + cross @ mobility)
     along, across = ohmic_tensor(c)
     found = np.array([[along, across], [-across, along]])

@@ -96,7 +96,8 @@ def test_not_refused(shape, coefficients):
 
 def test_one_wall_that_holds_is_enough():
     places = {"S": "edge = [[0, 0], [0, 1]]", "D": "edge = [[3, 0], [3, 1]]"}
-    shape = 'family = "bar"\nlength = 3\nwidth = 1\nwall = [{edge = [[1, 0], [1.2, 0]], slip_length = "SLIP"}]'
+    wall = 'wall = [{edge = [[1, 0], [1.2, 0]], slip_length = "SLIP"}]'
+    shape = f'family = "bar"\nlength = 3\nwidth = 1\n{wall}'
     held = device(shape.replace("SLIP", "0 um"), places, math.inf)
     assert solve_device(held, fluid(**FREE), settings=LIGHT).conductance[0, 0] > 0
     slipping = device(shape.replace("SLIP", "inf"), places, math.inf)

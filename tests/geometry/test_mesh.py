@@ -49,16 +49,16 @@ def test_facets_of_contacts_and_walls_cover_the_boundary_once(mesh):
     contacts = [mesh.stretches_of_contact(i) for i in range(len(mesh.device.contacts))]
     walls = [mesh.stretches_of_wall(i) for i in range(len(mesh.device.walls))]
     assert all(contacts)
-    assert sorted(i for owned in contacts + walls for i in owned) == list(range(len(mesh.stretches)))
+    assert sorted(i for owned in contacts + walls for i in owned) == list(
+        range(len(mesh.stretches))
+    )
     facets = np.concatenate([mesh.facets_of(owned) for owned in contacts + walls])
     assert np.array_equal(np.sort(facets), np.sort(mesh.skfem.boundary_facets()))
 
 
 def test_six_nodes_are_vertices_and_middles_of_edges(mesh):
     t = mesh.triangulation
-    share = np.array(
-        [[1, 0, 0], [0, 1, 0], [0, 0, 1], [0.5, 0.5, 0], [0, 0.5, 0.5], [0.5, 0, 0.5]]
-    )
+    share = np.array([[1, 0, 0], [0, 1, 0], [0, 0, 1], [0.5, 0.5, 0], [0, 0.5, 0.5], [0.5, 0, 0.5]])
     at = mapped(t, np.broadcast_to(share, (mesh.elements, 6, 3)))
     assert mesh.six_nodes == pytest.approx(at * mesh.scale + mesh.origin, abs=1e-13 * mesh.scale)
 

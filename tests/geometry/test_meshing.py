@@ -1,4 +1,4 @@
-"""Meshes of devices: deterministic, exact in shape, never turned over, graded where they must be."""
+"""Meshes of devices: deterministic, exact in shape, never turned over, graded where needed."""
 
 from __future__ import annotations
 
@@ -15,7 +15,7 @@ from fluidev.geometry.mesh import DeviceMesh
 from fluidev.geometry.meshing import MeshSettings, Sources, mesh_device
 from fluidev.geometry.outline import Arc, Outline
 from fluidev.geometry.sizing import singular_points
-from tests.flow.devices import FAMILIES, UM, bar, device, disk, family, half_ring, holed_plate
+from tests.flow.devices import FAMILIES, UM, bar, device, family, half_ring, holed_plate
 
 THIN = 1.0 / 200  # Gurzhi length over the width of the narrowest place
 POLYGONS = ("bar", "hall bar", "constriction", "cross")

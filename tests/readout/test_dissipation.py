@@ -48,8 +48,7 @@ def on_one_mesh(device: Device, coefficients: FluidCoefficients) -> Drive:
     template = solved(device, fluid(0.3 * UM))
     solution = replace(
         template,
-        conductance=found.conductance,
-        states=found.states,
+        solution=found,
         blocks=blocks,
         weights=weights,
         coefficients=coefficients,
@@ -164,8 +163,7 @@ def test_coefficients_that_vary_reach_the_densities():
     found = solve(blocks, weights)
     solution = replace(
         solved(bar(), coefficients),
-        conductance=found.conductance,
-        states=found.states,
+        solution=found,
         blocks=blocks,
         weights=weights,
     )

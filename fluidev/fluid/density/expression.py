@@ -19,7 +19,14 @@ from fluidev.case.table import path
 from fluidev.case.units import parse_number, parse_quantity
 from fluidev.case.words import describe, written
 from fluidev.errors import CaseError
-from fluidev.fluid.density.formula import CONSTANTS, FUNCTIONS, dimension_of, noun, values
+from fluidev.fluid.density.formula import (
+    CONSTANTS,
+    FUNCTIONS,
+    check_functions,
+    dimension_of,
+    noun,
+    values,
+)
 from fluidev.fluid.density.landscape import Density, DensityForm, Place
 from fluidev.fluid.density.language import Node, parse
 
@@ -44,9 +51,10 @@ def read_expression(table: dict[str, object], place: Place) -> Density:
         raise CaseError(key, written(text), expected, place.file)
     try:
         tree = parse(text)
+        check_functions(tree)
     except ValueError as refused:
         raise CaseError(key, written(text), str(refused), place.file) from None
-    used = set(tree.names())
+    used = set(tree.words("name"))
     parameters = _parameters(table, used, place)
     dimensions = {name: dimension for name, (_, dimension) in parameters.items()}
     try:

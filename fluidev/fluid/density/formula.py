@@ -77,11 +77,19 @@ def noun(dimension: Fraction) -> str:
     return f"a length to the power {dimension}"
 
 
+def check_functions(tree: Node) -> None:
+    """Raise ValueError, with a clause, for a function in a formula that there is none of."""
+    for word in tree.words("function"):
+        if word not in FUNCTIONS:
+            hint = suggestion(word, list(FUNCTIONS))
+            raise ValueError(f"there is no function {word!r}; {hint}")
+
+
 def dimension_of(tree: Node, dimensions: Mapping[str, Fraction]) -> Fraction:
     """The dimension of a formula whose names have these dimensions.
 
-    Raises ValueError, with a clause, for a name or a function that is not there, for values that
-    do not go together, and for a power whose exponent is not a plain small number.
+    Its functions are taken to be there. Raises ValueError, with a clause, for a name that is not,
+    for values that do not go together, and for a power whose exponent is no plain small number.
     """
     if tree.kind == "number":
         return Fraction(0)
@@ -113,10 +121,7 @@ def _of_name(name: str, dimensions: Mapping[str, Fraction]) -> Fraction:
 
 
 def _of_function(tree: Node, parts: list[Fraction]) -> Fraction:
-    function = FUNCTIONS.get(tree.word)
-    if function is None:
-        hint = suggestion(tree.word, list(FUNCTIONS))
-        raise ValueError(f"there is no function {tree.word!r}; {hint}")
+    function = FUNCTIONS[tree.word]
     if len(parts) != function.count:
         values = "value" if function.count == 1 else "values"
         raise ValueError(f"{tree.word} takes {function.count} {values}, got {len(parts)}")
@@ -131,7 +136,7 @@ def _of_function(tree: Node, parts: list[Fraction]) -> Fraction:
 def _of_power(tree: Node, base: Fraction, exponent: Fraction) -> Fraction:
     if exponent != 0:
         raise ValueError(f"an exponent is a pure number, got {noun(exponent)}")
-    if any(True for _ in tree.parts[1].names()):
+    if any(tree.parts[1].words("name")):
         if base != 0:
             raise ValueError(f"{noun(base)} can only be raised to a plain number")
         return Fraction(0)

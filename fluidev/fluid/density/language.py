@@ -41,12 +41,12 @@ class Node:
         """Levels of the tree."""
         return 1 + max((part.depth for part in self.parts), default=0)
 
-    def names(self) -> Iterator[str]:
-        """Every name in the tree, in the order of the text, repeated as they are there."""
-        if self.kind == "name":
+    def words(self, kind: str) -> Iterator[str]:
+        """Every name (or operator, or function) in the tree, as often as it is there."""
+        if self.kind == kind:
             yield self.word
         for part in self.parts:
-            yield from part.names()
+            yield from part.words(kind)
 
 
 @dataclass(frozen=True)
@@ -122,7 +122,7 @@ class _Reader:
         token = self.take()
         if token.kind == "number":
             if math.isinf(value := float(token.text)):
-                raise ValueError(f"the number {token.text} is too large")
+                raise ValueError(f"the number {_short(token.text)} is too large")
             return Node("number", value=value)
         if token.kind == "name":
             if self.next.text != "(":
@@ -165,4 +165,8 @@ class _Reader:
             )
         elif token.kind in ("name", "number") or token.text == "(":
             hint = hint or "; expected an operator such as * between two values"
-        return ValueError(f"{token.text!r}{after} is not understood{hint}")
+        return ValueError(f"{_short(token.text)!r}{after} is not understood{hint}")
+
+
+def _short(text: str) -> str:
+    return text if len(text) <= 20 else f"{text[:18]} …"
