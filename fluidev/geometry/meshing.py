@@ -15,6 +15,9 @@ from fluidev.geometry.outline import Arc
 from fluidev.geometry.sizing import corners, local_width, sample_boundary, sides, singular_points
 from fluidev.geometry.sources import SizeField, Sources
 
+# Centre and radius of an arc, in mesh lengths.
+Rim = tuple[np.ndarray, float]
+
 # Lengths within this factor are the same length: decisions must not hang on rounding.
 _SAME = 1.0 + 1e-9
 
@@ -165,15 +168,20 @@ def _add_layers(
                 wanted = max(wanted, min(needed, settings.most_layers))
         for _ in range(wanted):
             mesh = split_toward(mesh, _extended(member, mesh.count), ratio)
+    rims = {
+        i: ((np.array(s.curve.centre) - origin) / scale, s.curve.radius / scale)
+        for i, s in enumerate(stretches)
+        if isinstance(s.curve, Arc)
+    }
     for side in sides(device):
         walls = [w for w in (stretches[i].wall for i in side) if w is not None]
         if len(walls) == len(side) and all(math.isinf(device.walls[w].slip_length) for w in walls):
             continue  # a perfectly slippery wall makes no layer
-        mesh = _boundary_layers(mesh, side, thickness, settings.wall_ratio, settings)
+        mesh = _boundary_layers(mesh, side, thickness, settings.wall_ratio, settings, rims)
     thickness = settings.wall_layers_to * contact_layer / settings.refine
     for side in sides(device, contacts=True):
         if stretches[side[0]].contact is not None:
-            mesh = _boundary_layers(mesh, side, thickness, settings.contact_ratio, settings)
+            mesh = _boundary_layers(mesh, side, thickness, settings.contact_ratio, settings, rims)
     return mesh
 
 
@@ -195,6 +203,7 @@ def _boundary_layers(
     thickness: float,
     ratio: float,
     settings: MeshSettings,
+    rims: dict[int, Rim],
 ) -> Triangulation:
     """Layers along one side until the thinnest is below `thickness` (mesh lengths).
 
@@ -209,7 +218,7 @@ def _boundary_layers(
     mesh = separate(mesh, member)
     for _ in range(settings.most_layers):
         member = _extended(member, mesh.count)
-        deep = _deep(mesh, member, side, thickness)
+        deep = _deep(mesh, member, side, thickness, rims)
         if not deep.any():
             break
         mesh = split_toward(mesh, deep, ratio)
@@ -217,19 +226,30 @@ def _boundary_layers(
 
 
 def _deep(
-    mesh: Triangulation, member: np.ndarray, side: tuple[int, ...], thickness: float
+    mesh: Triangulation,
+    member: np.ndarray,
+    side: tuple[int, ...],
+    thickness: float,
+    rims: dict[int, Rim],
 ) -> np.ndarray:
     """Members (count,) on a side with an edge whose other end lies deeper than `thickness`."""
     vertices = np.empty((mesh.count, 2))
     vertices[mesh.triangles.ravel()] = mesh.nodes[:, :3].reshape(-1, 2)
-    start, end = mesh.boundary[np.isin(mesh.stretch, side)].T
+    on_side = np.isin(mesh.stretch, side)
+    start, end = mesh.boundary[on_side].T
     along = np.zeros((mesh.count, 2))
     along[start] = along[end] = vertices[end] - vertices[start]
     along[member] /= np.hypot(*along[member].T)[:, None]
+    stretch = np.full(mesh.count, -1)
+    stretch[start] = stretch[end] = mesh.stretch[on_side]
     pairs = mesh.triangles[:, [0, 1, 1, 2, 2, 0, 1, 0, 2, 1, 0, 2]].reshape(-1, 2)
     near, far = pairs[member[pairs[:, 0]] & ~member[pairs[:, 1]]].T
     leap = vertices[far] - vertices[near]
     depth = np.abs(along[near, 0] * leap[:, 1] - along[near, 1] * leap[:, 0])
+    for number, (centre, radius) in rims.items():
+        # On a rim depth is counted from the arc: an edge along it is not deep for being a chord.
+        here = stretch[near] == number
+        depth[here] = np.abs(np.hypot(*(vertices[far[here]] - centre).T) - radius)
     deep = np.zeros(mesh.count, dtype=bool)
     deep[near[depth > thickness * _SAME]] = True
     return deep
