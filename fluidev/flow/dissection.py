@@ -1,8 +1,10 @@
 """Nested dissection of a mesh: an elimination order that keeps the factors sparse.
 
-Elements are halved again and again across their longer extent; an unknown is eliminated where the
-smallest part that holds all its elements has been reached (A. George, SIAM J. Numer. Anal. 10, 345
-(1973)). Within a part velocities go before potentials, so that a potential finds a pivot.
+Elements are halved again and again by one of their coordinates, the one that parts fewer neighbours
+(on a line of tiny elements that is not the one along which they extend less); an unknown is
+eliminated where the smallest part that holds all its elements has been reached (A. George, SIAM J.
+Numer. Anal. 10, 345 (1973)). Within a part velocities go before potentials, so that a potential
+finds a pivot.
 """
 
 from __future__ import annotations
@@ -11,22 +13,36 @@ import math
 
 import numpy as np
 
+_NONE = np.zeros((2, 0), dtype=np.int64)
 
-def part_codes(centres: np.ndarray, parts: int) -> np.ndarray:
+
+def part_codes(centres: np.ndarray, parts: int, neighbours: np.ndarray = _NONE) -> np.ndarray:
     """Binary path (ne,) of each element in the tree of halvings, about `parts` leaves.
 
-    centres: (ne, 2).
+    centres: (ne, 2). neighbours: (2, m) pairs of elements with a common edge; where both ways of
+    halving part as many the longer extent is halved.
     """
-    codes = np.zeros(len(centres), dtype=np.int64)
+    count = len(centres)
+    codes = np.zeros(count, dtype=np.int64)
     for _ in range(max(0, math.ceil(math.log2(max(parts, 1))))):
         order = np.argsort(codes, kind="stable")
-        bounds = np.flatnonzero(np.diff(codes[order])) + 1
-        halved = 2 * codes
-        for group in np.split(order, bounds):
-            axis = int(np.argmax(np.ptp(centres[group], axis=0)))
-            rank = np.argsort(centres[group, axis], kind="stable")
-            halved[group[rank[len(group) // 2 :]]] += 1
-        codes = halved
+        starts = np.append(0, np.flatnonzero(np.diff(codes[order])) + 1)
+        sizes = np.diff(np.append(starts, count))
+        group = np.empty(count, dtype=np.int64)
+        group[order] = np.repeat(np.arange(len(starts)), sizes)
+        one, other = neighbours[:, group[neighbours[0]] == group[neighbours[1]]]
+        sides, cuts, extents = [], [], []
+        for axis in (0, 1):
+            at = centres[:, axis]
+            by = np.lexsort((at, group))
+            rank = np.empty(count, dtype=np.int64)
+            rank[by] = np.arange(count) - np.repeat(starts, sizes)
+            side = rank >= sizes[group] // 2
+            sides.append(side)
+            cuts.append(np.bincount(group[one], side[one] != side[other], len(starts)))
+            extents.append(at[by[starts + sizes - 1]] - at[by[starts]])
+        across = (cuts[1] < cuts[0]) | ((cuts[1] == cuts[0]) & (extents[1] > extents[0]))
+        codes = 2 * codes + np.where(across[group], sides[1], sides[0])
     return codes
 
 

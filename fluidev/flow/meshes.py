@@ -48,9 +48,9 @@ def mesh_of(
         raise NumericsError(
             f"the density changes within less than {1e9 * smallest:.3g} nm at ({x:.4g}, {y:.4g}) "
             "µm, or in too many places at once: the mesh cannot follow; give its edges more width, "
-            "or the puddles a larger spacer"
+            "the puddles a larger spacer, or a junction a larger residual_density"
         )
-    extra = _together(_sources(parts, found), extra)
+    extra = _together(_sources(parts, found, settings.refine), extra)
     return mesh_device(
         parts.device,
         gurzhi * found.spread.gurzhi,
@@ -61,11 +61,11 @@ def mesh_of(
     )
 
 
-def _sources(parts: Parts, found: Survey) -> Sources | None:
+def _sources(parts: Parts, found: Survey, refine: float) -> Sources | None:
     if not len(found.cells):
         return None
     scale, origin = mesh_frame(parts.device)
-    sizes = PER_CELL * found.cells[:, 2] / scale
+    sizes = PER_CELL * found.cells[:, 2] / scale / refine
     return Sources((found.cells[:, :2] - np.asarray(origin)) / scale, sizes)
 
 

@@ -179,11 +179,18 @@ def solve_device(
     """
     if mesh is None:
         mesh = mesh_device(device, *layer_lengths(coefficients), settings)
-    blocks = assemble(FlowSpace(mesh, degree), ratios)
-    weights = weigh(coefficients, device, mesh.scale)
-    solution = solve(blocks, weights)
+    return solve_on(FlowSpace(mesh, degree), coefficients, ratios)
+
+
+def solve_on(
+    space: FlowSpace, coefficients: FluidCoefficients, ratios: Ratios | None = None
+) -> FlowSolution:
+    """All flows of the device of a space with one fluid; see solve_device."""
+    device = space.mesh.device
+    blocks = assemble(space, ratios)
+    weights = weigh(coefficients, device, space.mesh.scale)
     names = tuple(contact.name for contact in device.contacts)
-    return FlowSolution(names, blocks, weights, coefficients, solution)
+    return FlowSolution(names, blocks, weights, coefficients, solve(blocks, weights))
 
 
 def solve_case(case: Case) -> Flow:
@@ -231,11 +238,11 @@ def solve_case(case: Case) -> Flow:
 def solve_twice(parts: Parts, mesh: DeviceMesh) -> tuple[FlowSolution, ErrorShares]:
     """The solution on a mesh and the shares of its error, from one of the next degree."""
     coefficients, ratios = parts.fluid.coefficients, parts.fluid.ratios
-    assert mesh.skfem.t.size  # made once, before two threads ask for it
+    # Both spaces are made before the threads start: what scikit-fem caches with the mesh on first
+    # use is visible to others before it is filled.
+    coarse, fine = FlowSpace(mesh, DEGREE), FlowSpace(mesh, DEGREE + 1)
     with ThreadPoolExecutor(2) as pool:
         # The factorisations release the interpreter, so the finer solve costs little time.
-        finer = pool.submit(
-            solve_device, parts.device, coefficients, DEGREE + 1, mesh=mesh, ratios=ratios
-        )
-        solution = solve_device(parts.device, coefficients, mesh=mesh, ratios=ratios)
+        finer = pool.submit(solve_on, fine, coefficients, ratios)
+        solution = solve_on(coarse, coefficients, ratios)
         return solution, error_shares(solution, finer.result())

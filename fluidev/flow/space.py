@@ -84,7 +84,8 @@ class FlowSpace:
     @cached_property
     def _parts(self) -> np.ndarray:
         mesh = self.mesh.skfem
-        return part_codes(mesh.p[:, mesh.t].mean(axis=1).T, self.mesh.elements // 2)
+        neighbours = mesh.f2t[:, mesh.f2t[1] >= 0]
+        return part_codes(mesh.p[:, mesh.t].mean(axis=1).T, self.mesh.elements // 2, neighbours)
 
     @cached_property
     def elimination_order(self) -> np.ndarray:

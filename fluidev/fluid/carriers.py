@@ -87,9 +87,7 @@ def carriers_of(
     Raises CaseError for other keys without a density, and for both a mass and a Dirac velocity.
     """
     if density is None:
-        given = [
-            name for name in CarrierKeys.model_fields if getattr(keys, name) not in (None, ())
-        ]
+        given = [name for name in CarrierKeys.model_fields if getattr(keys, name) not in (None, ())]
         if not given:
             return None
         example = KINDS["sheet density"].example

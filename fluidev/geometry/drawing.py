@@ -12,7 +12,7 @@ from fluidev.geometry.device import Device
 from fluidev.geometry.lagrange import LagrangeTriangle
 from fluidev.geometry.layers import Triangulation
 from fluidev.geometry.mesh import CurvedTriangles
-from fluidev.geometry.outline import Arc, Point, Segment
+from fluidev.geometry.outline import Arc, Curve, Point, Segment
 from fluidev.geometry.sources import Sources
 
 GMSH_HELP = (
@@ -161,6 +161,7 @@ def _curve(
     parabola would stay one.
     """
     curves = [s.curve for loop in device.loops for s in loop]
+    vertices = _onto(curves, scale, origin, vertices, boundary, stretch)
     arcs = [(i, curve) for i, curve in enumerate(curves) if isinstance(curve, Arc)]
     corner = vertices[triangles]
     count = len(vertices)
@@ -187,3 +188,33 @@ def _curve(
             chord = start + t[:, None] * (end - start)
             nodes[element] += near[:, None] ** 2 * (rim - chord)
     return Triangulation(triangles, nodes, boundary, stretch, count, order)
+
+
+def _onto(
+    curves: list[Curve],
+    scale: float,
+    origin: np.ndarray,
+    vertices: np.ndarray,
+    boundary: np.ndarray,
+    stretch: np.ndarray,
+) -> np.ndarray:
+    """The vertices (n, 2) with those of the boundary back on the exact curves: _draw rounded them.
+
+    Cells at a corner can be so small that rounded ends would turn them.
+    """
+    vertices = vertices.copy()
+    ends = []
+    for i, curve in enumerate(curves):
+        on = np.unique(boundary[stretch == i])
+        start = (np.asarray(curve.point(0.0)) - origin) / scale
+        if isinstance(curve, Arc):
+            centre = (np.asarray(curve.centre) - origin) / scale
+            spoke = vertices[on] - centre
+            vertices[on] = centre + spoke * (curve.radius / scale / np.hypot(*spoke.T)[:, None])
+        else:
+            along = np.asarray(curve.tangent(0.0))
+            vertices[on] = start + ((vertices[on] - start) @ along)[:, None] * along
+        ends.append((on[np.argmin(np.hypot(*(vertices[on] - start).T))], start))
+    for vertex, start in ends:
+        vertices[vertex] = start
+    return vertices

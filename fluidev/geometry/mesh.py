@@ -16,7 +16,7 @@ from fluidev.geometry.sources import SizeField
 
 @dataclass(repr=False)
 class CurvedTriangles(MeshTri1):
-    """A scikit-fem mesh of triangles of order 4: an arc is followed to h⁵, its area to h⁸.
+    """A scikit-fem mesh of triangles of order 4: an arc is followed to h⁵, its area to h⁶.
 
     Quadratic triangles would do for the flow's own error, but an estimate made on one mesh does
     not see what the mesh itself gets wrong, so that part is made negligible.

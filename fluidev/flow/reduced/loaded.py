@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 import numpy as np
+import scipy.sparse as sp
 
-from fluidev.flow.blocks import Blocks, turned
-from fluidev.flow.system import Condensed, element_matrices
+from fluidev.flow.blocks import Blocks, velocity_matrix
+from fluidev.flow.system import Condensed
 from fluidev.flow.weights import Weights
 
 
@@ -23,10 +24,21 @@ def solve_loaded(
     """
     if not system.inside.size:
         return system.solve(loads, transposed)
-    space = blocks.space
-    nb, count = space.velocity.Nbfun, space.velocity.elem.interior_dofs
+    element = blocks.space.velocity
+    nb, count = element.Nbfun, element.elem.interior_dofs
     within = np.concatenate([np.arange(nb - count, nb), np.arange(2 * nb - count, 2 * nb)])
-    local = turned(space, element_matrices(blocks, weights))[:, within[:, None], within]
+    w = weights
+    local = velocity_matrix(
+        blocks.products,
+        w.viscous,
+        w.bulk,
+        w.hall,
+        w.friction,
+        w.field,
+        w.intrinsic * w.field**2,
+    )
+    # Inside an element no node has a frame of its own.
+    local = local[:, within[:, None], within]
     if transposed:
         local = local.transpose(0, 2, 1)
     pushed = loads[system.inside]
@@ -34,10 +46,16 @@ def solve_loaded(
     # The recovery of the other system, transposed, is A_oi A_ii⁻¹.
     passing = system.recovery if transposed else system.mirrored
     passed = np.matmul(passing.transpose(0, 2, 1), pushed)
-    rest = loads.copy()
+    rest = loads - gathered(passed, system.others, len(loads))
     rest[system.inside.ravel()] = 0.0
-    keep = system.others >= 0
-    np.subtract.at(rest, system.others[keep], passed[keep])
     found = system.solve(rest, transposed)
     found[system.inside.ravel()] += alone.reshape(-1, loads.shape[1])
     return found
+
+
+def gathered(local: np.ndarray, places: np.ndarray, size: int) -> np.ndarray:
+    """Sum (size, m) of local vectors (ne, n, m) at places (ne, n), −1 dropped."""
+    keep = places >= 0
+    rows = places[keep]
+    picks = sp.csr_array((np.ones(len(rows)), (rows, np.arange(len(rows)))), (size, len(rows)))
+    return np.asarray(picks @ local[keep])

@@ -13,10 +13,13 @@ import scipy.sparse as sp
 from fluidev.flow.blocks import Blocks, turned_rows
 from fluidev.flow.edges import edge_tables, trace_matrix
 from fluidev.flow.products import tables
+from fluidev.flow.reduced.loaded import gathered
 from fluidev.flow.weights import Weights
 
 
-def random_loads(blocks: Blocks, weights: Weights, count: int, rng: np.random.Generator) -> np.ndarray:
+def random_loads(
+    blocks: Blocks, weights: Weights, count: int, rng: np.random.Generator
+) -> np.ndarray:
     """Loads (nf + np, count) with the covariance of the symmetric part of the weighted operator.
 
     That of the potentials is twice what their stiffness and penalty give, an upper bound on the
@@ -27,7 +30,9 @@ def random_loads(blocks: Blocks, weights: Weights, count: int, rng: np.random.Ge
     found[:split] += _inside(blocks, weights, count, rng)
     for wall, _ in blocks.walls:
         if weights.walls[wall]:
-            found[:split] += _along_wall(blocks, wall, weights.walls[wall], count, rng)
+            traces = wall_traces(blocks, wall)
+            draw = rng.standard_normal((traces.shape[0], count))
+            found[:split] += np.sqrt(weights.walls[wall]) * (traces.T @ draw)
     for trace, resistance in zip(blocks.contacts, weights.contacts, strict=True):
         if resistance:
             draw = rng.standard_normal((len(trace.weight), count))
@@ -37,9 +42,7 @@ def random_loads(blocks: Blocks, weights: Weights, count: int, rng: np.random.Ge
     return found
 
 
-def _inside(
-    blocks: Blocks, weights: Weights, count: int, rng: np.random.Generator
-) -> np.ndarray:
+def _inside(blocks: Blocks, weights: Weights, count: int, rng: np.random.Generator) -> np.ndarray:
     """(nf, count): 2(ε − ½∇·u):ε is (∂_x u_x − ∂_y u_y)² + (∂_x u_y + ∂_y u_x)², point by point."""
     space, at = blocks.space, blocks.products.at
     shape = tables(space.velocity)
@@ -59,20 +62,11 @@ def _inside(
     across += np.matmul(shape.value, draw(weights.friction, at.friction))
     local = turned_rows(space, np.concatenate([along, across], axis=1))
     places = space.local_unknowns[:, : local.shape[1]]
-    return _gathered(local, places, blocks.velocities)
+    return gathered(local, places, blocks.velocities)
 
 
-def _gathered(local: np.ndarray, places: np.ndarray, size: int) -> np.ndarray:
-    """Sum (size, m) of local vectors (ne, n, m) at places (ne, n), −1 dropped."""
-    keep = places >= 0
-    rows, values = places[keep], local[keep]
-    picks = sp.csr_array((np.ones(len(rows)), (rows, np.arange(len(rows)))), shape=(size, len(rows)))
-    return np.asarray(picks @ values)
-
-
-def _along_wall(
-    blocks: Blocks, wall: int, weight: float, count: int, rng: np.random.Generator
-) -> np.ndarray:
+def wall_traces(blocks: Blocks, wall: int) -> sp.csr_array:
+    """T (points, nf) with TᵀT the block of a wall: the tangential velocity along it."""
     space = blocks.space
     edges = space.edges(space.mesh.stretches_of_wall(wall))
     value, _, dofs = edge_tables(space.velocity, edges)
@@ -81,8 +75,7 @@ def _along_wall(
     y = trace_matrix(value * n[0], dofs, space.nodes)
     along = sp.csr_array(sp.hstack([x, y]) @ space.prolongation)
     ratio = edges.ratios(space.mesh, blocks.products.ratios).shear_viscosity
-    size = np.sqrt(weight * (edges.dx * ratio)).ravel()
-    return np.asarray(along.T @ (size[:, None] * rng.standard_normal((len(size), count))))
+    return sp.csr_array(sp.diags_array(np.sqrt(edges.dx * ratio).ravel()) @ along)
 
 
 def _of_potentials(blocks: Blocks, count: int, rng: np.random.Generator) -> np.ndarray:
@@ -92,7 +85,7 @@ def _of_potentials(blocks: Blocks, count: int, rng: np.random.Generator) -> np.n
     dx = np.sqrt(space.velocity.dx * blocks.products.at.intrinsic_conductivity)
     one, two = (dx[:, :, None] * rng.standard_normal((*dx.shape, count)) for _ in range(2))
     local = np.matmul(x, one) + np.matmul(y, two)
-    found = _gathered(local, space.potential.element_dofs.T, space.potentials)
+    found = gathered(local, space.potential.element_dofs.T, space.potentials)
     for trace in blocks.contacts:
         size = np.sqrt(trace.weight * trace.intrinsic * trace.penalty)
         found += trace.value.T @ (size[:, None] * rng.standard_normal((len(size), count)))

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from functools import cached_property
 
 import numpy as np
@@ -88,7 +88,9 @@ class Problem:
             return sum(block for wall, block in blocks.walls if wall in self.walls)
         if name == term.SERIES:
             return sum(
-                t.current.T @ sp.diags_array(t.weight * (contact.resistance / self.length)) @ t.current
+                t.current.T
+                @ sp.diags_array(t.weight * (contact.resistance / self.length))
+                @ t.current
                 for t, contact in zip(blocks.contacts, device.contacts, strict=True)
             )
         found = blocks.viscous
@@ -116,8 +118,7 @@ class Problem:
     def _contact_potentials(self) -> np.ndarray:
         """(np, N): the loads of 1 V on each contact on the potentials, per σ_Q."""
         parts = [
-            t.slope.T @ (t.weight * t.intrinsic)
-            - t.value.T @ (t.weight * t.intrinsic * t.penalty)
+            t.slope.T @ (t.weight * t.intrinsic) - t.value.T @ (t.weight * t.intrinsic * t.penalty)
             for t in self.blocks.contacts
         ]
         return np.stack(parts, axis=1)
@@ -174,9 +175,9 @@ class Problem:
             for trace, resistance in zip(blocks.contacts, weights.contacts, strict=True)
         )
         system = condense(blocks, weights, forms)
-        loads = np.stack([form.load for form in forms], axis=1)
+        driven = np.stack([form.load for form in forms], axis=1)
         currents = np.stack([form.current for form in forms], axis=1)
-        states = [_completed(system.solve(loads[:, :-1]), split)]
+        states = [_completed(system.solve(driven[:, :-1]), split)]
         conductance = closed(currents.T @ states[0]) / unit
         if self.skew:
             states.append(_completed(system.solve(currents[:, :-1], transposed=True), split))
@@ -192,31 +193,29 @@ class Problem:
             )
             for transposed, flow in enumerate(values)
         ]
+        # The system is A over the unit, so this noise has A for its covariance.
         noise = random_loads(blocks, weights, PROBES, rng) * np.sqrt(unit)
-        noise[split:] *= np.sqrt(1.0)
-        slopes = []
-        for transposed, push in enumerate(pushes):
-            padded = np.zeros((len(loads), push.shape[1]))
-            padded[:split] = push
-            # The residual is measured with the symmetric part.
-            extra = noise if not self.skew else noise[:, :0]
-            whole = np.concatenate([padded, extra], axis=1)
-            solved = solve_loaded(blocks, weights, system, whole, bool(transposed))[:split] / unit
-            slopes.append(solved[:, : push.shape[1]])
+        loads = [np.pad(push, ((0, blocks.space.potentials), (0, 0))) for push in pushes]
         if self.skew:
-            plain = Weights(**{**vars(weights), "field": 0.0, "hall": 0.0})
-            system = condense(blocks, plain, forms)
-            probes = solve_loaded(blocks, plain, system, noise)[:split] / unit
+            solved = [
+                solve_loaded(blocks, weights, system, load, bool(transposed))
+                for transposed, load in enumerate(loads)
+            ]
+            # A residual is measured with the symmetric part.
+            plain = replace(weights, field=0.0, hall=0.0)
+            solved.append(solve_loaded(blocks, plain, condense(blocks, plain, forms), noise))
         else:
-            probes = solved[:, push.shape[1] :]
+            both = np.concatenate([loads[0], noise], axis=1)
+            solved = [solve_loaded(blocks, weights, system, both)]
+        gained = np.concatenate(solved, axis=1)[:split] / unit
         solution = Solution(conductance, states[0], states[-1], forms)
         return Snapshot(
             row,
             solution,
             weights,
             np.concatenate(values, axis=1),
-            np.concatenate(slopes, axis=1),
-            probes / np.sqrt(PROBES),
+            gained[:, :-PROBES],
+            gained[:, -PROBES:] / np.sqrt(PROBES),
         )
 
 

@@ -12,7 +12,8 @@ correlation ∫ e^{−2qd} J₀(qr) q dq ∝ [1 + (r/2d)²]^{−3/2}: half of it
 
 The landscape is a sum of plane waves with wavevectors drawn from that spectrum, the same wherever
 it is asked for, and of the given rms over the infinite plane exactly. It is Gaussian, so it has no
-bound: with rms a third of the density the sign changes here and there.
+bound: with rms a third of the density the sign changes here and there. Without friction it makes a
+sheet resistance of about (η + ζ)(3/4)(rms/n)²/(n e d)².
 """
 
 from __future__ import annotations
@@ -29,6 +30,7 @@ from fluidev.case.units import PositiveLength, PureNumber, SheetDensity
 from fluidev.fluid.density.landscape import Density, Place
 
 WAVES = 256
+GOLDEN = 0.6180339887498949
 _CHUNK = 4096  # points at once
 
 
@@ -62,15 +64,29 @@ class Waves:
 def puddle_waves(rms: float, spacer: float, seed: int, count: int = WAVES) -> Waves:
     """The landscape of a given rms (any unit), spacer (m) and seed, as plane waves.
 
-    The wavevectors have the density e^{−2qd} q dq dθ: a sum of two exponential variables over 2d,
-    in a random direction. Only the raw bits of PCG64 are used, which no version of numpy changes.
+    The wavevectors have the density e^{−2qd} q dq dθ: one at a random place in each of equal shares
+    of the spectrum, in directions that go round by the golden ratio, so that every landscape has
+    the mean gradient ⟨|∇δn|²⟩ = (3/2)(rms/d)² of the spectrum to a percent or so, in all directions.
+    Only the raw bits of PCG64 are used, which no version of numpy changes.
     """
-    raw = np.random.PCG64(seed).random_raw(4 * count).reshape(4, count)
+    raw = np.random.PCG64(seed).random_raw(2 * count + 1)
     uniform = ((raw >> np.uint64(11)) + 0.5) * 2.0**-53  # in (0, 1), never 0
-    size = -(np.log(uniform[0]) + np.log(uniform[1])) / (2.0 * spacer)
-    angle = 2.0 * math.pi * uniform[2]
+    number = np.arange(count)
+    size = _quantile((number + uniform[:count]) / count) / (2.0 * spacer)
+    angle = 2.0 * math.pi * np.mod(uniform[-1] + number * GOLDEN, 1.0)
     wavevectors = np.stack([size * np.cos(angle), size * np.sin(angle)], axis=1)
-    return Waves(rms * math.sqrt(2.0 / count), wavevectors, 2.0 * math.pi * uniform[3])
+    phases = 2.0 * math.pi * uniform[count:-1]
+    return Waves(rms * math.sqrt(2.0 / count), wavevectors, phases)
+
+
+def _quantile(share: np.ndarray) -> np.ndarray:
+    """The z (n,) below which this share (n,) of ∫ e^{−z} z dz lies: (1 + z)e^{−z} = 1 − share."""
+    low, high = np.zeros_like(share), np.full_like(share, 60.0)
+    for _ in range(60):
+        middle = 0.5 * (low + high)
+        below = 1.0 - (1.0 + middle) * np.exp(-middle) < share
+        low, high = np.where(below, middle, low), np.where(below, high, middle)
+    return 0.5 * (low + high)
 
 
 def with_puddles(density: Density, table: object, place: Place) -> Density:

@@ -1,0 +1,102 @@
+"""The greedy choice: full solves where the readings are worst known, until all are known well."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, field
+
+import numpy as np
+
+from fluidev.flow.reduced.basis import Basis
+from fluidev.flow.reduced.judge import Judge
+from fluidev.flow.reduced.piece import Piece
+from fluidev.flow.reduced.problem import Problem, Snapshot
+from fluidev.flow.reduced.terms import VISCOUS, term_weights
+
+
+@dataclass(frozen=True)
+class Grown:
+    """A basis that was grown: with the points (n, 6) solved at and the worst of the grid.
+
+    worst: largest error bound of a judged reading over its largest magnitude.
+    """
+
+    basis: Basis = field(repr=False)
+    points: np.ndarray
+    worst: float
+
+
+def grow(
+    problem: Problem,
+    grid: np.ndarray,
+    judge: Judge,
+    tolerance: float,
+    most: int,
+    rng: np.random.Generator,
+    seeds: tuple[np.ndarray, ...] = (),
+    seen: Callable[[Snapshot], None] = lambda snapshot: None,
+    say: Callable[[float], None] = lambda worst: None,
+) -> Grown:
+    """A basis for the points of a grid (m, 6), from at most so many full solves.
+
+    seeds: velocities (nf, ·) to start from. seen: told of every snapshot. say: told the
+    worst bound so far, over the reading's largest magnitude.
+    """
+    weights = term_weights(problem.terms, grid, problem.length)
+    viscous = weights[:, problem.terms.index(VISCOUS)]
+    basis = Basis(problem, float(np.sqrt(viscous.min() * viscous.max())))
+    for seed in seeds:
+        basis.add(seed)
+    chosen: list[int] = []
+    waiting = _starts(weights)
+    worst = np.inf
+    while len(chosen) < most:
+        if not waiting:
+            ratios = _ratios(piece_of(basis), grid, judge)
+            ratios[chosen] = 0.0
+            worst = float(ratios.max())
+            say(worst)
+            if worst <= tolerance:
+                break
+            waiting = [int(np.argmax(ratios))]
+        index = waiting.pop(0)
+        chosen.append(index)
+        snapshot = problem.snapshot(grid[index], rng)
+        basis.refer(snapshot.probes, weights[index])
+        basis.add(np.concatenate([snapshot.values, snapshot.slopes], axis=1))
+        seen(snapshot)
+    return Grown(basis, grid[chosen], worst)
+
+
+def piece_of(basis: Basis) -> Piece:
+    """The reduced problem on a basis as it stands."""
+    problem = basis.problem
+    return Piece(
+        problem.terms,
+        problem.length,
+        basis.blocks,
+        basis.loads,
+        problem.base[:-1, :-1],
+        np.array(basis.references),
+        np.array(basis.measured),
+        np.array(basis.probe_loads),
+    )
+
+
+def _ratios(piece: Piece, grid: np.ndarray, judge: Judge) -> np.ndarray:
+    """Largest bound (m,) of the judged readings at each point, over its largest magnitude."""
+    values, bound, scale = judge.resistances(piece.answer(grid))
+    return np.asarray((bound / (scale[:, None] * judge.largest(values, scale))).max(axis=1))
+
+
+def _starts(weights: np.ndarray) -> list[int]:
+    """The middle of the grid, then where it ends: least and largest weight of each term."""
+    found: list[int] = []
+    for column in range(1, weights.shape[1]):
+        for sign in (1, -1):
+            # Among equals the ends of the terms before count.
+            keys = [sign * weights[:, c] for c in range(1, weights.shape[1]) if c != column]
+            found.append(int(np.lexsort((*keys, sign * weights[:, column]))[0]))
+    ranks = np.argsort(np.argsort(weights, axis=0, kind="stable"), axis=0, kind="stable")
+    middle = int(np.argmin(np.abs(ranks[:, 1:] - 0.5 * len(weights)).max(axis=1)))
+    return list(dict.fromkeys([middle, *found]))
