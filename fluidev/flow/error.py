@@ -24,7 +24,7 @@ from fluidev.geometry.sizing import singular_points
 
 # The bar of a reading: this multiple of its estimated error, plus the elements' shares added in
 # square, so that shares which happen to cancel leave a bar. Checked by the study in benchmarks/.
-_SIGNED = 2.0
+SIGNED = 2.0
 
 
 @dataclass(frozen=True)
@@ -56,7 +56,7 @@ class ErrorShares:
         signed = abs(float(shares.sum()) + edge)
         square = math.sqrt(float((shares**2).sum()) + edge**2)
         hidden = float((self.unseen * np.abs(shares)).sum())
-        return _SIGNED * (signed + hidden) + square
+        return SIGNED * (signed + hidden) + square
 
 
 def error_shares(coarse: FlowSolution, fine: FlowSolution) -> ErrorShares:
@@ -96,7 +96,7 @@ def _unseen(mesh: DeviceMesh, degree: int) -> np.ndarray:
 
     There the energy error falls with the degree p only like p^(−4λ), λ the exponent of the
     velocity, so that one degree more gains the share 1 − (p/(p + 1))^(4λ) of it. Source: I. Babuška,
-    M. Suri, SIAM Rev. 36, 578 (1994). _SIGNED times the share itself is counted already; the rest
+    M. Suri, SIAM Rev. 36, 578 (1994). SIGNED times the share itself is counted already; the rest
     is taken a third larger, since the rate holds for large p only.
     """
     gain = degree / (degree + 1.0)
@@ -107,7 +107,7 @@ def _unseen(mesh: DeviceMesh, degree: int) -> np.ndarray:
         reach = np.hypot(*(corner - at).transpose(2, 0, 1))
         touch = (reach < 1e-12).any(axis=1)
         whole = 4.0 / 3.0 / (1.0 - gain ** (4 * point.exponent))
-        missed[touch] = np.maximum(missed[touch], whole / _SIGNED - 1.0)
+        missed[touch] = np.maximum(missed[touch], whole / SIGNED - 1.0)
     return missed
 
 

@@ -33,15 +33,19 @@ class Factor:
     order: np.ndarray
     lu: Any
 
-    def solve(self, loads: np.ndarray, transposed: bool = False) -> np.ndarray:
+    def solve(
+        self, loads: np.ndarray, transposed: bool = False, refined: bool = True
+    ) -> np.ndarray:
         """Solutions (n, m) for loads (n, m), with iterative refinement until it stops helping.
 
-        transposed: solve with the transposed matrix. Warns where the residual stays above
-        rounding level.
+        transposed: solve with the transposed matrix. refined: False for a single, rougher pass.
+        Warns where the residual stays above rounding level.
         """
         matrix = self.matrix.T if transposed else self.matrix
         loads = self.balance[:, None] * loads
         found = self._once(loads, transposed)
+        if not refined:
+            return self.balance[:, None] * found
         scale = abs(matrix) @ np.abs(found) + np.abs(loads)
         scale = scale.max(axis=0, keepdims=True) + np.finfo(float).tiny
         residual = loads - matrix @ found

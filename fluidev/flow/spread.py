@@ -24,7 +24,8 @@ class Spread:
 
     lowest, highest: the least and the largest charge density. lowest_at: (x, y) in m of the least.
     gurzhi: the least Gurzhi length; layer: the least thickness √(η σ_Q)/|ρ| of an intrinsic layer.
-    vanishing: whether the charge density is zero somewhere, or looks so from the points.
+    variation: how much the charge density varies: four standard deviations, about the range of
+    a wave. vanishing: whether the charge density is zero somewhere, or looks so from the points.
     """
 
     lowest: float = np.inf
@@ -32,6 +33,7 @@ class Spread:
     lowest_at: tuple[float, float] = (np.nan, np.nan)
     gurzhi: float = np.inf
     layer: float = np.inf
+    variation: float = 0.0
     vanishing: bool = False
 
     def with_points(self, points: np.ndarray, at: LocalRatios) -> Spread:
@@ -78,7 +80,11 @@ def spread_of(device: Device, fluid: Fluid) -> Spread:
     at = fluid.ratios(points)
     density = np.full(inside.shape, np.nan)
     density[inside] = at.charge_density
-    return replace(found.with_points(points, at), vanishing=_vanishes(density))
+    return replace(
+        found.with_points(points, at),
+        variation=float(4.0 * np.std(at.charge_density)),
+        vanishing=_vanishes(density),
+    )
 
 
 def _vanishes(density: np.ndarray) -> bool:

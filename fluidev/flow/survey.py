@@ -22,8 +22,8 @@ COARSE = 0.2
 DEEPEST = 9
 # More cells than this make a mesh that no machine of today solves in passing.
 MOST_CELLS = 8000
-# In a cell the density may change by this share of what it is (or of its range, if that is less)
-# if it were to go on as steeply as at its steepest, …
+# In a cell the density may change by this share of what it is (or of how much it varies over the
+# device, if that is less) if it were to go on as steeply as at its steepest, …
 SLOPE = 0.75
 # … and bend away from a straight line by this share.
 BEND = 0.1
@@ -108,7 +108,8 @@ def _rough(
     slope, bend = _change(density)
     here, momentum = _largest([density]), _largest([viscosity])
     natural, smoothing = _natural(fluid, momentum, slope / sizes)
-    scale = np.minimum(span, here + natural)
+    varied = min(span, max(spread.variation, span / 6.0))
+    scale = np.minimum(varied, here + natural)
     rough = (slope > SLOPE * scale) | (bend > BEND * scale)
     # Where intrinsic conduction smooths the flow a sharper density need not be followed, …
     rough &= sizes > SMOOTHED * smoothing / np.maximum(here, np.finfo(float).tiny)

@@ -78,10 +78,12 @@ class Condensed:
     recovery: np.ndarray
     mirrored: np.ndarray
 
-    def solve(self, loads: np.ndarray, transposed: bool = False) -> np.ndarray:
+    def solve(
+        self, loads: np.ndarray, transposed: bool = False, refined: bool = True
+    ) -> np.ndarray:
         """Solutions (nf + np, m) for loads that vanish on the eliminated unknowns."""
         found = np.zeros_like(loads)
-        found[self.kept] = self.factor.solve(loads[self.kept], transposed)
+        found[self.kept] = self.factor.solve(loads[self.kept], transposed, refined)
         if self.inside.size:
             around = np.where((self.others >= 0)[:, :, None], found[self.others], 0.0)
             recovery = self.mirrored if transposed else self.recovery

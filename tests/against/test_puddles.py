@@ -1,14 +1,14 @@
 """Puddle averages, result 15 (first half): density gradients alone make a resistance.
 
 In a large sample without friction let ρ = ρ₀ + δρ, δρ small, and u = U + u₁. To first order the
-current conserves charge by ρ₀∇·u₁ + U·∇δρ = 0, and the only first-order force, ρ₀E₁, is a gradient, so
-u₁ is one too: u₁(q) = −q (q·U) δρ(q)/(q²ρ₀). For a gradient the stress does the work (η + ζ)(∇·u₁)² on
-average over a period, and all of ρ_eff (ρ₀U)² is that work:
+current conserves charge by ρ₀∇·u₁ + U·∇δρ = 0, and the only first-order force, ρ₀E₁, is a gradient,
+so u₁ is one too: u₁(q) = −q (q·U) δρ(q)/(q²ρ₀). For a gradient the stress does the work
+(η + ζ)(∇·u₁)² on average over a period, and all of ρ_eff (ρ₀U)² is that work:
 
     ρ_eff along U = (η + ζ)⟨(Û·∇δρ)²⟩/ρ₀⁴,   over all directions (η + ζ)⟨|∇δρ|²⟩/(2ρ₀⁴).
 
-η, ζ enter at ρ₀ only: what follows the density is of higher order. The next order is δρ⁴, for δρ and
-−δρ are the same landscape, moved by half a period, in all that is tested here.
+η and ζ enter at ρ₀ only: what follows the density is of higher order. The next order is δρ³, and δρ⁴
+where δρ and −δρ are the same landscape, moved by half a period, as for a single wave.
 Source: A. V. Andreev, S. A. Kivelson, B. Spivak, Phys. Rev. Lett. 106, 256804 (2011), without heat.
 
 A periodic sample is computed as a strip between normal-entry contacts with perfectly slipping
@@ -140,7 +140,7 @@ def landscape(parts: Parts, rms: float, spacer: float, length: float, width: flo
     a, b = (g.ravel() for g in np.meshgrid(np.arange(1, 40), np.arange(1, 40)))
     p, q = math.pi * a / length, math.pi * b / width
     size = np.exp(-np.hypot(p, q) * spacer)
-    a, b, p, q, size = (item[size > 1e-3] for item in (a, b, p, q, size))
+    a, b, p, q, size = (item[size > 1e-2] for item in (a, b, p, q, size))
     c = size * np.random.default_rng(seed).normal(size=len(size))
     c *= rms / math.sqrt((c**2).sum() / 4)
 
@@ -155,41 +155,52 @@ def landscape(parts: Parts, rms: float, spacer: float, length: float, width: flo
     return varied, float((c**2 * p**2).sum() / 4), float((c**2 * q**2).sum() / 4)
 
 
-@pytest.mark.parametrize("rms", [0.01, 0.03, 0.1])
+@pytest.mark.parametrize("rms", [0.02, 0.1])
 def test_random_puddles_of_a_periodic_sample(rms: float) -> None:
-    length, width, spacer = 3.0, 1.5, 0.15
+    length, width, spacer = 2.0, 1.0, 0.15
+    size = (length * UM, width * UM)
     results, wanted = [], []
     for across in (False, True):
         plain = parts_of(fluidev.parse(strip(length, width, '"1e12/cm^2"', across=across)))
-        parts, along_x, along_y = landscape(plain, rms, spacer * UM, length * UM, width * UM, 5)
-        found = solve_device(
-            parts.device,
-            parts.fluid.coefficients,
-            mesh=mesh_of(parts),
-            ratios=parts.fluid.ratios,
-        )
-        squares = width / length if across else length / width
-        results.append(1.0 / found.conductance[0, 0] / squares)
+        for turned in (rms, -rms):  # their mean leaves out the third order
+            parts, along_x, along_y = landscape(plain, turned, spacer * UM, *size, 5)
+            found = solve_device(
+                parts.device,
+                parts.fluid.coefficients,
+                mesh=mesh_of(parts),
+                ratios=parts.fluid.ratios,
+            )
+            squares = width / length if across else length / width
+            results.append(1.0 / found.conductance[0, 0] / squares)
         wanted.append(predicted(2 * (along_y if across else along_x)))
-    # the next order is about 3 rms²
-    assert results == pytest.approx(wanted, rel=5e-4 + 5 * rms**2)
-    assert sum(results) / 2 == pytest.approx(sum(wanted) / 2, rel=5e-4 + 5 * rms**2)
+    means = [sum(results[:2]) / 2, sum(results[2:]) / 2]
+    print(means, wanted)
+    assert means == pytest.approx(wanted, rel=5e-4 + 5 * rms**2)
+    assert sum(means) / 2 == pytest.approx(sum(wanted) / 2, rel=5e-4 + 5 * rms**2)
 
 
 @pytest.mark.slow
 def test_a_wide_strip_of_the_puddles_of_a_case() -> None:
     """[fluid.puddles] in strips of 20 d by 10 d: ⟨|∇δn|²⟩ = 3 rms²/(2d²) from ∫ q² e^{−2qd} q dq.
 
-    The sides of a strip that is no mirror image add something of the order of d over its size, and
-    the landscapes scatter; the mean of eight is within a tenth.
+    The sides of a strip that is no mirror image add something of the order of d over its size, of
+    either sign: a tenth in one strip, a few per cent in the mean of eight.
     """
-    spacer, rms = 0.2, 0.05
-    found = []
+    spacer, rms, length, width = 0.2, 0.05, 4.0, 2.0
+    found, own = [], []
     for seed in range(8):
         puddles = f'puddles = {{rms = "{rms}e12/cm^2", spacer = "{spacer} um", seed = {seed}}}'
-        text = strip(20 * spacer, 10 * spacer, '"1e12/cm^2"', puddles)
-        flow = fluidev.solve(fluidev.parse(text))
-        found.append(flow.resistance(("S", "D"), ("S", "D")).value / 2.0)
+        flow = fluidev.solve(fluidev.parse(strip(length, width, '"1e12/cm^2"', puddles)))
+        found.append(flow.resistance(("S", "D"), ("S", "D")).value / (length / width))
+        profile = flow.fluid.density.profile
+        points = np.random.default_rng(1).uniform(size=(2, 20_000)) * [[length], [width]] * UM
+        step = np.array([[1e-3 * spacer * UM], [0.0]])
+        slope = (profile(points + step) - profile(points - step)) / (2 * step[0, 0])
+        own.append(predicted(2 * (slope**2).mean() / N**2))
     wanted = predicted(1.5 * rms**2 / (spacer * UM) ** 2)
-    print(f"mean {np.mean(found):.4g} Ω, scatter {np.std(found):.2g} Ω, predicted {wanted:.4g} Ω")
+    ratios = np.array(found) / own
+    print(f"to the strip's own gradients {ratios.mean():.3f} ± {ratios.std():.3f}")
+    print(f"mean {np.mean(found):.4g} Ω, predicted {wanted:.4g} Ω")
+    assert ratios == pytest.approx(np.ones(8), abs=0.15)
+    assert ratios.mean() == pytest.approx(1.0, abs=0.04)
     assert np.mean(found) == pytest.approx(wanted, rel=0.1)

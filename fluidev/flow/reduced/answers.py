@@ -6,7 +6,7 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
-from fluidev.flow.reduced.discretisation import Discretisation
+from fluidev.flow.reduced.discretisation import Shares
 
 
 @dataclass(frozen=True)
@@ -15,7 +15,7 @@ class Answers:
 
     left, right: (m, N − 1, N − 1) in S: what a full solve on the same mesh would change, ΔG, is
     bounded by |aᵀ ΔG b|² ≤ (aᵀ left a)(bᵀ right b), potentials a, b of the first N − 1 contacts taken
-    against the last. discretisation: what the mesh itself gets wrong. scale: (m,) mean two-terminal
+    against the last. shares: what the mesh itself gets wrong. scale: (m,) mean two-terminal
     resistance in Ω.
     """
 
@@ -24,7 +24,7 @@ class Answers:
     left: np.ndarray = field(repr=False)
     right: np.ndarray = field(repr=False)
     scale: np.ndarray = field(repr=False)
-    discretisation: Discretisation = field(repr=False)
+    shares: tuple[Shares, ...] = field(repr=False)
 
     def __len__(self) -> int:
         return len(self.conductance)
@@ -39,7 +39,13 @@ class Answers:
 
     def bars(self, left: np.ndarray, right: np.ndarray) -> np.ndarray:
         """Error bars (m,) of leftᵀ G right for contact potentials (m, N): both kinds together."""
-        return self.reduction_bars(left, right) + self.discretisation.bars(left, right, self.scale)
+        return self.reduction_bars(left, right) + self.discretisation_bars(left, right)
+
+    def discretisation_bars(self, left: np.ndarray, right: np.ndarray) -> np.ndarray:
+        """The part (m,) of the bars that is due to the mesh: the largest that was found anywhere."""
+        one = np.einsum("mij,mi->mj", self.conductance, left)
+        two = np.einsum("mij,mj->mi", self.conductance, right)
+        return np.max([s.bars(one, two) for s in self.shares], axis=0) * self.scale
 
     def reduction_bars(self, left: np.ndarray, right: np.ndarray) -> np.ndarray:
         """The part (m,) of the bars that is due to the reduction alone."""

@@ -13,6 +13,8 @@ from fluidev.flow.reduced.terms import FRICTION, SKEW, VISCOUS
 # What is left of a vector after projection counts as new above this part of it; the energy, and
 # so the conductance, is then known to its square.
 _NEW = 1e-6
+# Vectors that room is made for at a time.
+_ROOM = 128
 
 
 @dataclass
@@ -27,7 +29,6 @@ class Basis:
 
     problem: Problem
     balance: float
-    vectors: np.ndarray = field(init=False)
     blocks: np.ndarray = field(init=False)
     loads: np.ndarray = field(init=False)
     probes: list[np.ndarray] = field(default_factory=list)
@@ -37,7 +38,8 @@ class Basis:
 
     def __post_init__(self) -> None:
         size, terms = self.problem.blocks.velocities, len(self.problem.terms)
-        self.vectors, self._duals = np.zeros((size, 0)), np.zeros((size, 0))
+        self._room = np.empty((2, _ROOM, size))
+        self._count = 0
         matrices = self.problem.matrices
         self._product = sp.csr_array(self.balance * matrices[VISCOUS] + matrices[FRICTION])
         self.blocks = np.zeros((terms, 0, 0))
@@ -47,17 +49,17 @@ class Basis:
         """Take up what is new in velocities (nf, m)."""
         weighed = self._product @ vectors
         size = np.sqrt((vectors * weighed).sum(axis=0))
-        fresh, weighed = self._projected(vectors / size, weighed / size)
-        for _ in range(2):
-            sizes, turn = np.linalg.eigh(fresh.T @ weighed)
-            keep = sizes > _NEW**2
-            turn = turn[:, keep] / np.sqrt(sizes[keep])
-            fresh, weighed = self._projected(fresh @ turn, weighed @ turn)
-        self._duals = np.concatenate([self._duals, weighed], axis=1)
-        old = self.vectors
-        self.vectors = np.concatenate([old, fresh], axis=1)
+        fresh, weighed = self._projected(vectors / size, weighed / size, 2)
+        sizes, turn = np.linalg.eigh(fresh.T @ weighed)
+        keep = sizes > _NEW**2
+        turn = turn[:, keep] / np.sqrt(sizes[keep])
+        fresh, weighed = self._projected(fresh @ turn, weighed @ turn, 1)
+        size = np.sqrt((fresh * weighed).sum(axis=0))
+        fresh, weighed = fresh / size, weighed / size
+        count = self.vectors.shape[1]
+        self._store(fresh, weighed)
         self.loads = np.concatenate([self.loads, fresh.T @ self.problem.loads])
-        count, size = old.shape[1], self.vectors.shape[1]
+        size = self.vectors.shape[1]
         blocks = np.empty((len(self.problem.terms), size, size))
         blocks[:, :count, :count] = self.blocks
         more = []
@@ -85,9 +87,30 @@ class Basis:
             parts.append(sign * (self.problem.applied(name, probes).T @ self.vectors))
         self.measured.append(np.stack(parts))
 
-    def _projected(self, vectors: np.ndarray, weighed: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+    @property
+    def vectors(self) -> np.ndarray:
+        """The basis (nf, r)."""
+        return np.asarray(self._room[0, : self._count].T)
+
+    @property
+    def _duals(self) -> np.ndarray:
+        """The inner product's matrix times the basis (nf, r)."""
+        return np.asarray(self._room[1, : self._count].T)
+
+    def _store(self, vectors: np.ndarray, weighed: np.ndarray) -> None:
+        total = self._count + vectors.shape[1]
+        if total > self._room.shape[1]:
+            more = np.empty((2, max(_ROOM, total), self._room.shape[2]))
+            self._room = np.concatenate([self._room, more], axis=1)
+        self._room[0, self._count : total] = vectors.T
+        self._room[1, self._count : total] = weighed.T
+        self._count = total
+
+    def _projected(
+        self, vectors: np.ndarray, weighed: np.ndarray, rounds: int
+    ) -> tuple[np.ndarray, np.ndarray]:
         """Vectors (nf, m) less what the basis has of them, and the same times the inner product."""
-        for _ in range(2 if self.vectors.shape[1] else 0):
+        for _ in range(rounds if self.vectors.shape[1] else 0):
             shares = self._duals.T @ vectors
             vectors, weighed = vectors - self.vectors @ shares, weighed - self._duals @ shares
         return vectors, weighed

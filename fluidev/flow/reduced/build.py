@@ -10,7 +10,6 @@ import numpy as np
 
 from fluidev.errors import NumericsError
 from fluidev.flow.parts import Parts
-from fluidev.flow.reduced.discretisation import Discretisation
 from fluidev.flow.reduced.identity import identity_of
 from fluidev.flow.reduced.judge import Judge, judge_of
 from fluidev.flow.reduced.making import Making
@@ -54,7 +53,6 @@ def build(
     with progress("making a reduced model") as step:
         made = Making(parts, ranges, judge, tolerance, degree, settings, most, step.say)
         held, slipping = made.held, made.slipping
-    total, squares = (np.array(part) for part in zip(*made.shares, strict=True))
     facts = {
         "degree": degree,
         "full_solves": made.solves,
@@ -74,7 +72,7 @@ def build(
         judge=judge,
         largest=made.largest,
         tolerance=tolerance,
-        discretisation=Discretisation(total, squares),
+        shares=tuple(made.shares),
         facts=facts,
     )
 

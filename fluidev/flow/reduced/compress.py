@@ -1,4 +1,4 @@
-"""Fewer modes for the same answers: the flows of the training points need not all that was solved."""
+"""Fewer modes for the same answers: the flows of a range need not all that was solved."""
 
 from __future__ import annotations
 
@@ -8,24 +8,28 @@ import numpy as np
 
 from fluidev.flow.reduced.judge import Judge
 from fluidev.flow.reduced.piece import Piece
-from fluidev.flow.reduced.terms import SKEW, WALL
+from fluidev.flow.reduced.terms import CHARGE, SKEW, VISCOUS, WALL, term_weights
 
 
 def compressed(
-    piece: Piece, grid: np.ndarray, judge: Judge, tolerance: float, traces: np.ndarray | None
+    piece: Piece,
+    grid: np.ndarray,
+    judge: Judge,
+    tolerance: float,
+    traces: np.ndarray | None,
+    holding: int,
+    balance: float,
 ) -> Piece:
     """The piece on the fewest leading modes that leave every judged bound within the tolerance.
 
-    Modes are the principal components of the flows at all points (m, 6) of the grid. traces: (r, r),
-    with TᵀT the wall term, from what the basis does along the varying walls; modes are turned so that
-    the wall term is diagonal to full relative accuracy, and a wall that all but holds the fluid
-    does not cost digits.
+    Modes are the principal components of the flows at all points (m, 6) of the grid, in energy.
+    traces: (r, r), with TᵀT the wall term, from what the basis does along the varying walls; modes
+    are turned so that the wall term is diagonal to full relative accuracy, and a wall that all but
+    holds the fluid does not cost digits. holding: so many leading vectors of the basis do not move
+    along the walls; they stay among themselves. balance: weight of the viscous term in the inner
+    product that the basis is orthonormal in.
     """
-    batch = piece.answer(grid, errors=False)
-    flows = batch.flows if not piece.skew else np.concatenate([batch.flows, batch.adjoints], axis=2)
-    columns = flows.transpose(1, 0, 2).reshape(piece.size, -1)
-    columns = columns / np.linalg.norm(columns, axis=0)
-    modes, _, _ = np.linalg.svd(columns, full_matrices=False)
+    modes = _principal(piece, grid, holding, balance)
 
     def good(count: int) -> bool:
         some = _turned(piece, modes[:, :count], traces)
@@ -33,12 +37,41 @@ def compressed(
         return bool((bound <= tolerance * scale[:, None] * judge.largest(values, scale)).all())
 
     low, high = 0, modes.shape[1]
-    if not good(high):
-        return _turned(piece, np.eye(piece.size), traces)
     while high - low > max(1, high // 20):
         middle = (low + high) // 2
         low, high = (low, middle) if good(middle) else (middle, high)
     return _turned(piece, modes[:, :high], traces)
+
+
+def _principal(piece: Piece, grid: np.ndarray, holding: int, balance: float) -> np.ndarray:
+    """Orthonormal modes (r, r) in falling order of the energy that they carry at some point."""
+    batch = piece.answer(grid, errors=False)
+    weights = term_weights(piece.terms, grid, piece.length)
+    energy = np.diagonal(batch.conductance, axis1=1, axis2=2)[:, None, :]
+    flows = batch.flows / np.sqrt(energy)
+    if piece.skew:
+        flows = np.concatenate([flows, batch.adjoints / np.sqrt(energy)], axis=2)
+    # What a unit vector of the basis may cost at each point, along the walls and elsewhere.
+    cost = np.maximum(1.0, weights[:, piece.terms.index(VISCOUS)] / balance)
+    if CHARGE in piece.terms:
+        block = piece.blocks[piece.terms.index(CHARGE)]
+        cost = cost + weights[:, piece.terms.index(CHARGE)] * np.linalg.norm(block, 2)
+    dear = cost
+    if WALL in piece.terms:
+        block = piece.blocks[piece.terms.index(WALL)]
+        dear = cost + weights[:, piece.terms.index(WALL)] * np.linalg.norm(block, 2)
+    found, sizes = [], []
+    for part, price in ((slice(0, holding), cost), (slice(holding, None), dear)):
+        columns = (flows * np.sqrt(price)[:, None, None])[:, part].transpose(1, 0, 2)
+        if not len(columns):
+            continue
+        turn, size, _ = np.linalg.svd(columns.reshape(len(columns), -1), full_matrices=False)
+        whole = np.zeros((piece.size, turn.shape[1]))
+        whole[part] = turn
+        found.append(whole)
+        sizes.append(size)
+    order = np.argsort(-np.concatenate(sizes), kind="stable")
+    return np.concatenate(found, axis=1)[:, order]
 
 
 def _turned(piece: Piece, modes: np.ndarray, traces: np.ndarray | None) -> Piece:

@@ -19,11 +19,13 @@ def solve_loaded(
 ) -> np.ndarray:
     """Solutions (nf + np, m) for loads (nf + np, m) that may act on the eliminated unknowns.
 
+    In a single pass: what it is for needs no refinement.
+
     system: flow.system.condense of the same blocks and weights. With A_ii the block inside an
     element: x_i = A_ii⁻¹ f_i + (what the rest gives), and the rest is loaded by f_o − A_oi A_ii⁻¹ f_i.
     """
     if not system.inside.size:
-        return system.solve(loads, transposed)
+        return system.solve(loads, transposed, refined=False)
     element = blocks.space.velocity
     nb, count = element.Nbfun, element.elem.interior_dofs
     within = np.concatenate([np.arange(nb - count, nb), np.arange(2 * nb - count, 2 * nb)])
@@ -48,7 +50,7 @@ def solve_loaded(
     passed = np.matmul(passing.transpose(0, 2, 1), pushed)
     rest = loads - gathered(passed, system.others, len(loads))
     rest[system.inside.ravel()] = 0.0
-    found = system.solve(rest, transposed)
+    found = system.solve(rest, transposed, refined=False)
     found[system.inside.ravel()] += alone.reshape(-1, loads.shape[1])
     return found
 

@@ -17,7 +17,7 @@ from fluidev.flow.parts import Parts
 from fluidev.flow.reduced import terms as term
 from fluidev.flow.reduced.basis import Basis
 from fluidev.flow.reduced.compress import compressed
-from fluidev.flow.reduced.discretisation import shares_of
+from fluidev.flow.reduced.discretisation import Shares, shares_of
 from fluidev.flow.reduced.greedy import grow, piece_of
 from fluidev.flow.reduced.judge import Judge
 from fluidev.flow.reduced.noise import wall_traces
@@ -30,7 +30,7 @@ from fluidev.geometry.meshing import MeshSettings
 
 # Full solves stop when all bounds on the training points are below this part of the tolerance, and
 # modes are left out until one reaches the second: points between the training points need room.
-_SOLVED, _LEFT = 0.4, 0.7
+_SOLVED, _LEFT = 0.7, 0.9
 
 
 @dataclass
@@ -49,10 +49,11 @@ class Making:
     settings: MeshSettings
     most: int
     say: Callable[[str], None]
-    shares: list[tuple[np.ndarray, np.ndarray]] = field(default_factory=list)
+    shares: list[Shares] = field(default_factory=list)
     solves: int = 0
     unknowns: int = 0
     worst: float = 0.0
+    _holding: int = 0
 
     @cached_property
     def mesh(self) -> DeviceMesh:
@@ -89,11 +90,13 @@ class Making:
         """The reduced problem where they do; its basis starts from the flows without slip."""
         if not self._slippery or self.ranges.slip_length[1] < HELD * self.mesh.scale:
             return None
-        problem, seeds = self._problem(1.0), ()
+        problem = self._problem(1.0)
+        seeds: tuple[np.ndarray, ...] = ()
         if self._basis_held is not None:
             held = self._basis_held
             there, here = held.problem.blocks.space, problem.blocks.space
             seeds = (here.prolongation.T @ (there.prolongation @ held.vectors),)
+            self._holding = held.vectors.shape[1]
         return self._finished(self._grown(problem, False, seeds), False)
 
     @cached_property
@@ -130,12 +133,11 @@ class Making:
         return Problem(blocks, terms, self.ranges.walls, bulk_ratio(self.parts.fluid.coefficients))
 
     def _grown(self, problem: Problem, held: bool, seeds: tuple[np.ndarray, ...]) -> Basis:
-        checks = [0, 1] if not self.shares else [0]
         seen = 0
 
         def take(snapshot: Snapshot) -> None:
             nonlocal seen
-            if seen in checks:
+            if seen == 0:
                 self.shares.append(shares_of(problem, snapshot))
             seen += 1
             self.solves += 1
@@ -160,11 +162,20 @@ class Making:
         self.say(f"making a reduced model: {self.solves} full solves{reached}")
 
     def _finished(self, basis: Basis, held: bool) -> Piece:
-        problem, traces = basis.problem, None
+        problem = basis.problem
+        traces: np.ndarray | None = None
         if term.WALL in problem.terms:
             walls = [wall for wall, _ in problem.blocks.walls if wall in problem.walls]
             along = [wall_traces(problem.blocks, wall) @ basis.vectors for wall in walls]
-            traces = np.linalg.qr(np.concatenate(along), mode="r")
+            traces = np.asarray(np.linalg.qr(np.concatenate(along), mode="r"))
             traces = np.pad(traces, ((0, traces.shape[1] - len(traces)), (0, 0)))
         grid = self._grid(held)
-        return compressed(piece_of(basis), grid, self.judge, _LEFT * self.tolerance, traces)
+        return compressed(
+            piece_of(basis),
+            grid,
+            self.judge,
+            _LEFT * self.tolerance,
+            traces,
+            self._holding if term.WALL in problem.terms else 0,
+            basis.balance,
+        )

@@ -12,7 +12,7 @@ from fluidev.flow.derivatives import Derivatives
 from fluidev.flow.full_solves import FullSolves
 from fluidev.flow.parts import Parts
 from fluidev.flow.reduced.answers import Answers, ReducedError
-from fluidev.flow.reduced.discretisation import Discretisation
+from fluidev.flow.reduced.discretisation import Shares
 from fluidev.flow.reduced.judge import Judge, mean_resistance
 from fluidev.flow.reduced.piece import Batch, Piece
 from fluidev.flow.reduced.ranges import HELD, Ranges
@@ -39,7 +39,7 @@ class ReducedModel:
     judge: Judge = field(repr=False)
     largest: np.ndarray = field(repr=False)
     tolerance: float
-    discretisation: Discretisation = field(repr=False)
+    shares: tuple[Shares, ...] = field(repr=False)
     facts: Mapping[str, float]
 
     @property
@@ -120,7 +120,7 @@ class ReducedModel:
             left / sheet[:, None, None],
             right / sheet[:, None, None],
             mean_resistance(np.linalg.inv(conductance)) * sheet,
-            self.discretisation,
+            self.shares,
         )
         return answers, batch
 

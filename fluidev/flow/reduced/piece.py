@@ -15,6 +15,8 @@ from fluidev.flow.reduced.terms import CHARGE, SKEW, term_weights, weight_ratios
 SAFETY = 3.0
 # So many of the best references are asked for the energy of an error.
 _ASKED = 3
+# Part of the power that rounding makes unsure.
+_ROUNDING = 1e-10
 # The energy of an error that no reference can tell.
 _UNKNOWN = 1e30
 # Points solved at a time, so that the matrices stay in fast memory.
@@ -76,8 +78,10 @@ class Piece:
         if not errors:
             none = np.zeros((len(table), 0, 0))
             return Batch(conductance, none, none, flows, adjoints)
-        right = self._energy(weights, flows, False)
-        left = self._energy(weights, adjoints, True) if self.skew else right
+        # The full solve is rounded as well, and the energy of its error with it.
+        floor = _ROUNDING * 0.5 * (conductance + conductance.transpose(0, 2, 1))
+        right = self._energy(weights, flows, False) + floor
+        left = self._energy(weights, adjoints, True) + floor if self.skew else right
         return Batch(conductance, left, right, flows, adjoints)
 
     def _flows(self, weights: np.ndarray, loads: np.ndarray, transposed: bool) -> np.ndarray:

@@ -11,7 +11,7 @@ from fluidev.flow.answer import COLUMNS
 
 # A slip length below this part of the device is answered as none: the drag of a wall goes on
 # changing, relatively, by a few times slip length over width.
-HELD = 1e-9
+HELD = 1e-8
 # Points of the training grid along each quantity, and about how many in all.
 _POINTS = {
     "gurzhi_length": 24,

@@ -13,7 +13,7 @@ import numpy as np
 
 from fluidev.errors import NumericsError
 from fluidev.flow.parts import Parts
-from fluidev.flow.reduced.discretisation import Discretisation
+from fluidev.flow.reduced.discretisation import Shares
 from fluidev.flow.reduced.identity import identity_of
 from fluidev.flow.reduced.judge import Judge
 from fluidev.flow.reduced.model import ReducedModel
@@ -32,6 +32,7 @@ def save(model: ReducedModel, file: str | os.PathLike[str]) -> None:
         "degree": model.facts["degree"],
         "ranges": asdict(model.ranges),
         "tolerance": model.tolerance,
+        "shares": len(model.shares),
         "faintest": model.judge.faintest,
         "facts": dict(model.facts),
     }
@@ -39,14 +40,14 @@ def save(model: ReducedModel, file: str | os.PathLike[str]) -> None:
         "current": model.judge.current,
         "voltage": model.judge.voltage,
         "largest": model.largest,
-        "total": model.discretisation.total,
-        "squares": model.discretisation.squares,
     }
     for name in _PIECES:
         piece: Piece | None = getattr(model, name)
         if piece is not None:
             about[name] = {"terms": piece.terms, "length": piece.length}
             arrays |= {f"{name}.{part}": getattr(piece, part) for part in _ARRAYS}
+    for index, shares in enumerate(model.shares):
+        arrays |= {f"shares.{index}.{name}": part for name, part in vars(shares).items()}
     partial = path.with_name(path.name + ".part")
     with partial.open("wb") as stream:
         np.savez(stream, about=np.array(json.dumps(about)), **arrays)  # type: ignore[arg-type]
@@ -89,7 +90,10 @@ def load(file: str | os.PathLike[str], parts: Parts) -> ReducedModel:
             judge=Judge(held["current"], held["voltage"], float(about["faintest"])),
             largest=held["largest"],
             tolerance=float(about["tolerance"]),
-            discretisation=Discretisation(held["total"], held["squares"]),
+            shares=tuple(
+                Shares(**{f.name: held[f"shares.{index}.{f.name}"] for f in fields(Shares)})
+                for index in range(int(about["shares"]))
+            ),
             facts=about["facts"],
         )
     except (KeyError, TypeError) as error:

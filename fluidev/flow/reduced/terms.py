@@ -46,16 +46,17 @@ def weight_ratios(
 ) -> tuple[np.ndarray, np.ndarray]:
     """Smallest and largest ratio (m, K) of the symmetric terms' weights at points to references.
 
-    The operator at a point lies between these multiples of that at a reference. A wall's drag
-    counts for no more than it can matter: below a tenth of the least of friction and viscosity a
-    change of it changes nothing, by the trace inequality.
+    The operator at a point lies between these multiples of that at a reference. The drag of a wall
+    counts together with what the fluid itself sets against a flow along it, which is at least √a + a
+    for a weight a of the viscous term and flows that vary over less than the device, as those do
+    that a basis leaves over: |u|² on the wall ≤ |u||∇u| inside.
     """
     keep = [i for i, term in enumerate(terms) if term not in SKEW]
     at, other = weights[:, None, keep].copy(), references[None][..., keep].copy()
     names = [terms[i] for i in keep]
     if WALL in names:
         wall, viscous = names.index(WALL), names.index(VISCOUS)
-        at[..., wall] += 0.1 * np.minimum(1.0, at[..., viscous])
-        other[..., wall] += 0.1 * np.minimum(1.0, other[..., viscous])
+        for side in (at, other):
+            side[..., wall] += np.sqrt(side[..., viscous]) + side[..., viscous]
     ratio = at / other
     return ratio.min(axis=2), ratio.max(axis=2)

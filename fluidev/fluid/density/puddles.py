@@ -66,7 +66,7 @@ def puddle_waves(rms: float, spacer: float, seed: int, count: int = WAVES) -> Wa
 
     The wavevectors have the density e^{−2qd} q dq dθ: one at a random place in each of equal shares
     of the spectrum, in directions that go round by the golden ratio, so that every landscape has
-    the mean gradient ⟨|∇δn|²⟩ = (3/2)(rms/d)² of the spectrum to a percent or so, in all directions.
+    the mean gradient ⟨|∇δn|²⟩ = (3/2)(rms/d)² of the spectrum to a few per cent, in all directions.
     Only the raw bits of PCG64 are used, which no version of numpy changes.
     """
     raw = np.random.PCG64(seed).random_raw(2 * count + 1)
