@@ -30,7 +30,7 @@ def run(given: argparse.Namespace) -> int:
 
     case = load_case(given)
     with progress("meshing"):
-        from fluidev.cli.doubts import doubts
+        from fluidev.cli.doubts import density_doubts, doubts
         from fluidev.flow.meshes import mesh_of
         from fluidev.flow.parts import parts_of
         from fluidev.geometry.outline import Outline
@@ -56,7 +56,7 @@ def run(given: argparse.Namespace) -> int:
     ]
     print("\n".join(_printed(section) for section in sections if section[1]))
     found = doubts(case, device, outline.size, passage_width(device), fluid.numbers)
-    for doubt in found:
+    for doubt in (*found, *density_doubts(parts)):
         print(f"doubtful  {doubt}")
     return 0
 

@@ -5,8 +5,10 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator, Mapping
 
-from fluidev.case.display import with_prefix
+from fluidev.case.display import plain, with_prefix
 from fluidev.case.load import Case
+from fluidev.flow.parts import Parts
+from fluidev.fluid.local import FEWEST
 from fluidev.geometry.device import Device
 
 SMALLEST_CONTACT = 1 / 200  # of the device
@@ -54,6 +56,18 @@ def doubts(
         yield "fluid.hall_viscosity_ratio has no effect without a magnetic_field"
     if not case.readings:
         yield "no reading is asked for; resist gives the conductance matrix"
+
+
+def density_doubts(parts: Parts) -> Iterator[str]:
+    """Sentences about a density that varies over the device."""
+    fluid = parts.fluid
+    if parts.spread is None or fluid.density is None or fluid.ratios is not fluid.rounded:
+        return
+    few = plain(FEWEST * fluid.density.reference / 1e4)
+    yield (
+        f"the density vanishes in places: no fewer than {few} cm⁻² carriers are taken to move "
+        "there; say how many with residual_density"
+    )
 
 
 def _length_doubts(

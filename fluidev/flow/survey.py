@@ -87,7 +87,8 @@ def _sampled(
     """Points (2, n, side, side) in m on every cell, its edges included, and which are inside."""
     import shapely
 
-    share = np.linspace(-0.5, 0.5, side)
+    # A little beyond the edges, so that a jump between two cells is seen from both.
+    share = 1.0001 * np.linspace(-0.5, 0.5, side)
     offset = cells[:, 2, None, None] * share
     x, y, _ = cells.T[:, :, None, None]
     shape = (len(cells), side, side)

@@ -9,6 +9,8 @@ of the larger of η/ρ²extent² and k/ρ².
 from __future__ import annotations
 
 import math
+from collections.abc import Callable
+from typing import Any
 
 import numpy as np
 import pytest
@@ -33,8 +35,12 @@ def reference_conductance(
     levels: int = 3,
     factor: float = 0.15,
     layered: bool = False,
+    density: Callable[[Any], Any] | None = None,
 ) -> np.ndarray:
     """Conductance matrix (N, N) in S of the device, currents counted into it.
+
+    density: the local density over the fluid's as a function of x in m (an NGSolve expression goes
+    in and comes out); η and k are proportional to it, for carriers of one mass, ν and τ.
 
     order: of the drift, one more than of the potential. maxh: element size over the device's
     extent. levels, factor: hp-refinement towards singular points; layered refines towards whole
@@ -45,7 +51,7 @@ def reference_conductance(
     if levels:
         mesh.RefineHP(levels, factor)
     mesh.Curve(order)
-    return _Form(device, fluid, extent, mesh, order).conductance()
+    return _Form(device, fluid, extent, mesh, order, density).conductance()
 
 
 def _extent(device: Device) -> float:
@@ -111,7 +117,8 @@ def _mesh(device: Device, extent: float, maxh: float, layered: bool):
 class _Form:
     """The bilinear form, its loads and its currents on one mesh."""
 
-    def __init__(self, device, fluid, extent, mesh, order):
+    def __init__(self, device, fluid, extent, mesh, order, density=None):
+        self.local = ngs.CF(1.0) if density is None else density(ngs.x * extent)
         rho = fluid.charge_density
         viscous, friction = 1 / (rho * extent) ** 2, fluid.friction / rho**2
         self.unit = max(fluid.shear_viscosity * viscous, friction)  # Ω
@@ -141,13 +148,13 @@ class _Form:
         strain, stretch = g[0, 1] + g[1, 0], g[0, 0] - g[1, 1]
         normal = self.eta * stretch + h * strain
         shear = self.eta * strain - h * stretch
-        return ngs.CF(
+        return self.local * ngs.CF(
             (normal + self.zeta * div, shear, shear, self.zeta * div - normal), dims=(2, 2)
         )
 
     def current(self, u, phi):
         """Current density j."""
-        return u + self.sigma * (-ngs.grad(phi) + self.turn(u))
+        return self.local * u + self.sigma * (-ngs.grad(phi) + self.turn(u))
 
     def turn(self, w):
         """w × B."""
@@ -171,8 +178,8 @@ class _Form:
         strain = (ngs.Grad(v) + ngs.Grad(v).trans) / 2
         j = self.current(u, phi)
         form = ngs.BilinearForm(self.space)
-        form += (ngs.InnerProduct(self.stress(u), strain) + self.k * u * v) * ngs.dx
-        form += (ngs.grad(phi) * v - self.turn(j) * v + j * ngs.grad(psi)) * ngs.dx
+        form += (ngs.InnerProduct(self.stress(u), strain) + self.local * self.k * u * v) * ngs.dx
+        form += (self.local * ngs.grad(phi) * v - self.turn(j) * v + j * ngs.grad(psi)) * ngs.dx
         for i, wall in enumerate(self.device.walls):
             where = f"wall{i}"
             if wall.slip_length == 0 or where not in self.mesh.GetBoundaries():
@@ -186,8 +193,8 @@ class _Form:
                 form += self.nitsche(u, v, self.t, where)
             specific = contact.resistance / self.extent / self.unit
             if self.sigma == 0:
-                form += -(v * self.n) * phi * where - (u * self.n) * psi * where
-                form += specific * (u * self.n) * (v * self.n) * where
+                form += -self.local * (v * self.n * phi + u * self.n * psi) * where
+                form += specific * self.local**2 * (u * self.n) * (v * self.n) * where
             elif specific:
                 form += -1 / specific * phi * psi * where
         return form.Assemble()
@@ -199,7 +206,7 @@ class _Form:
         own, where = 0.0, f"contact{i}"
         specific = self.device.contacts[i].resistance / self.extent / self.unit
         if self.sigma == 0:
-            functional += -(v * self.n) * self.edge(where)
+            functional += -self.local * (v * self.n) * self.edge(where)
         elif specific:
             functional += -1 / specific * psi * self.edge(where)
             own = ngs.Integrate(ngs.CF(1 / specific), self.mesh.Boundaries(where))

@@ -11,6 +11,7 @@ import math
 
 import numpy as np
 import pytest
+from scipy import constants
 
 import fluidev
 from fluidev.geometry.build import build_device
@@ -190,3 +191,35 @@ def test_slip_round_sharp_inner_corners():
     )
     ends = {"S": "edge = [[0, 0], [0, 1]]", "D": "edge = [[4, 0], [4, 1]]"}
     compare(case_text(shape, ends, fluid, 0.4), fluid, order=4, levels=12)
+
+
+def test_bar_with_a_density_step():
+    # twice the density on the right: η, k and ρ all follow it (result 11 has no walls that hold)
+    fluid = electrons(relaxation_time=3.0)
+    text = hall_bar(fluid).replace(
+        'density = "1e12 / cm^2"',
+        'density = {expression = "n*(1.5 + 0.5*tanh(x/w - 2))", n = "1e12 / cm^2", w = "1 um"}',
+    )
+    assert "tanh" in text
+    flow = fluidev.solve(fluidev.parse(text))
+    there = reference.reference_conductance(
+        flow.mesh.device,
+        flow.fluid.coefficients,
+        **FINE,
+        density=lambda x: (
+            _step(x) * 1e16 * constants.e / abs(flow.fluid.coefficients.charge_density)
+        ),
+    )
+    for quantity in every_reading(flow.contacts):
+        assert reading(flow.conductance, *quantity) == pytest.approx(
+            reading(there, *quantity), rel=TOLERANCE
+        )
+
+
+def _step(x):
+    """The density of the case over 1e12 / cm², x in m."""
+    import ngsolve as ngs
+
+    argument = x / UM - 2.0
+    grown = ngs.exp(2.0 * argument)
+    return 1.5 + 0.5 * (grown - 1.0) / (grown + 1.0)

@@ -9,6 +9,7 @@ from pathlib import Path
 
 import numpy as np
 import pytest
+from scipy import constants
 
 import fluidev
 from fluidev.errors import CaseError, NumericsError
@@ -18,6 +19,9 @@ from fluidev.flow.run import solve_device
 from fluidev.fluid.ratios import LocalRatios
 from fluidev.geometry.mesh import DeviceMesh
 from fluidev.geometry.meshing import MeshSettings, mesh_device
+from fluidev.readout.dissipation import dissipation
+from fluidev.readout.fields import driven_by_current
+from fluidev.readout.probe import probe
 from tests.against.cases import UM, Sample, annulus, case_text
 from tests.flow.devices import fluid as coefficients
 from tests.flow.devices import holed_plate
@@ -280,7 +284,7 @@ def test_a_faint_or_narrow_variation_is_no_rigid_motion() -> None:
     """A frictionless fluid between slipping walls is stopped by any gradient of its density."""
     for density in (
         formula("n0*(1 + 0.0003*sin(2*pi*x/l))", l=3),
-        formula("n0*(1 + 0.1*exp(-((x - a)/w)^2))", a=1.5, w=0.02),
+        formula("n0*(1 + 0.1*exp(-((x - a)/w)^2))", a=1.5, w=0.05),
     ):
         case = text(density, slip=math.inf).replace('"2 ps"', '"inf"')
         flow = fluidev.solve(fluidev.parse(case))
@@ -288,3 +292,37 @@ def test_a_faint_or_narrow_variation_is_no_rigid_motion() -> None:
     case = text(formula("n0*(1 + 0.5*y/w)", w=1), slip=math.inf).replace('"2 ps"', '"inf"')
     with pytest.raises(NumericsError, match="slide along x"):
         fluidev.solve(fluidev.parse(case))
+
+
+def test_what_is_supplied_is_dissipated() -> None:
+    """Σ V I by channel, and the fields at points, with coefficients that vary and change sign."""
+    keys = (
+        'intrinsic_conductivity = "1 mS"\nresidual_density = "2e11/cm^2"\nbulk_viscosity_ratio = 1'
+    )
+    density = formula("n0*tanh((x - a)/w)*(1 + y/(2*b))", a=1.5, b=1, w=0.4)
+    flow = fluidev.solve(fluidev.parse(text(density, keys, slip=0.3)))
+    drive = driven_by_current(flow.solution, ("S", "D"))
+    found = dissipation(drive)
+    assert found.total == pytest.approx(found.supplied, rel=1e-10)
+    assert min(found.viscous, found.friction, found.intrinsic, found.walls) > 0.01 * found.total
+    places = np.array([[0.5, 0.3], [1.5, 0.5], [2.6, 0.8]]) * UM
+    at = probe(drive, places)
+    profile = flow.fluid.density.profile  # type: ignore[union-attr]
+    assert profile is not None and at.drift_velocity is not None
+    charge = -constants.e * profile(places.T)
+    assert at.convective == pytest.approx(charge * at.drift_velocity, rel=1e-9, abs=1e-9)
+    # Electrons on the right drift against the current, holes on the left along it.
+    assert at.drift_velocity[0, 0] > 0.0 > at.drift_velocity[0, 2]
+
+
+def test_the_same_current_crosses_everywhere() -> None:
+    keys = 'intrinsic_conductivity = "1 mS"\nresidual_density = "2e11/cm^2"'
+    density = formula("n0*tanh((x - a)/w)*(1 + y/(2*b))", a=1.5, b=1, w=0.4)
+    flow = fluidev.solve(fluidev.parse(text(density, keys)))
+    drive = driven_by_current(flow.solution, ("S", "D"))
+    weights = np.polynomial.legendre.leggauss(60)[1] / 2
+    y = (np.polynomial.legendre.leggauss(60)[0] + 1) / 2
+    for x in (0.4, 1.5, 2.2):
+        points = np.stack([np.full_like(y, x), y], axis=1) * UM
+        crossing = float(weights @ probe(drive, points).current[0]) * UM
+        assert crossing == pytest.approx(1.0, rel=2e-4)

@@ -40,7 +40,7 @@ def build(
     any, all there are. tolerance: largest error that the reduction may add to a reading, over that
     reading's largest magnitude in the ranges, both over the mean two-terminal resistance at the
     same point. degree, settings: of the velocities and the mesh, which suits the smallest Gurzhi
-    length. most: the largest number of full solves for each kind of wall.
+    length. most: the largest number of full solves.
     Raises ValueError for a reading of an unknown contact and NumericsError for a device whose
     contacts are resistive where σ_Q > 0.
     """
@@ -52,12 +52,11 @@ def build(
     begun = time.monotonic()
     with progress("making a reduced model") as step:
         made = Making(parts, ranges, judge, tolerance, degree, settings, most, step.say)
-        held, slipping = made.held, made.slipping
+        piece = made.piece
     facts = {
         "degree": degree,
         "full_solves": made.solves,
-        "held_modes": held.size if held else 0,
-        "slipping_modes": slipping.size if slipping else 0,
+        "modes": piece.size,
         "elements": made.mesh.elements,
         "unknowns": made.unknowns,
         "seconds": time.monotonic() - begun,
@@ -67,8 +66,7 @@ def build(
         parts=parts,
         ranges=ranges,
         identity=identity_of(parts, ranges, degree),
-        held=held,
-        slipping=slipping,
+        piece=piece,
         judge=judge,
         largest=made.largest,
         tolerance=tolerance,

@@ -33,20 +33,17 @@ def grow(
     tolerance: float,
     most: int,
     rng: np.random.Generator,
-    seeds: tuple[np.ndarray, ...] = (),
     seen: Callable[[Snapshot], None] = lambda snapshot: None,
     say: Callable[[float], None] = lambda worst: None,
 ) -> Grown:
     """A basis for the points of a grid (m, 6), from at most so many full solves.
 
-    seeds: velocities (nf, ·) to start from. seen: told of every snapshot. say: told the
+    seen: told of every snapshot. say: told the
     worst bound so far, over the reading's largest magnitude.
     """
     weights = term_weights(problem.terms, grid, problem.length)
     viscous = weights[:, problem.terms.index(VISCOUS)]
     basis = Basis(problem, float(np.sqrt(viscous.min() * viscous.max())))
-    for seed in seeds:
-        basis.add(seed)
     chosen: list[int] = []
     waiting = _starts(weights)
     worst = np.inf

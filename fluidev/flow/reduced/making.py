@@ -2,9 +2,8 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Callable
-from dataclasses import dataclass, field, replace
+from dataclasses import dataclass, field
 from functools import cached_property
 
 import numpy as np
@@ -23,7 +22,7 @@ from fluidev.flow.reduced.judge import Judge
 from fluidev.flow.reduced.noise import wall_traces
 from fluidev.flow.reduced.piece import Piece
 from fluidev.flow.reduced.problem import Problem, Snapshot
-from fluidev.flow.reduced.ranges import HELD, Ranges
+from fluidev.flow.reduced.ranges import Ranges
 from fluidev.flow.space import FlowSpace
 from fluidev.geometry.mesh import DeviceMesh
 from fluidev.geometry.meshing import MeshSettings
@@ -31,6 +30,8 @@ from fluidev.geometry.meshing import MeshSettings
 # Full solves stop when all bounds on the training points are below this part of the tolerance, and
 # modes are left out until one reaches the second: points between the training points need room.
 _SOLVED, _LEFT = 0.7, 0.9
+# Discretisation errors are estimated at so many of the first full solves.
+_CHECKED = 2
 
 
 @dataclass
@@ -53,7 +54,6 @@ class Making:
     solves: int = 0
     unknowns: int = 0
     worst: float = 0.0
-    _holding: int = 0
 
     @cached_property
     def mesh(self) -> DeviceMesh:
@@ -69,61 +69,70 @@ class Making:
         return mesh_of(parts_at(self.parts, thinnest, r.walls), self.settings)
 
     @cached_property
-    def _slippery(self) -> bool:
-        """Whether any wall has the slip length that varies."""
-        return any(self.mesh.stretches_of_wall(wall) for wall in self.ranges.walls)
+    def _slips(self) -> bool:
+        """Whether some wall has the slip length that varies, and it is not only zero."""
+        some = any(self.mesh.stretches_of_wall(wall) for wall in self.ranges.walls)
+        return some and self.ranges.slip_length[1] > 0.0
 
     @cached_property
-    def _basis_held(self) -> Basis | None:
-        if self._slippery and self.ranges.slip_length[0] >= HELD * self.mesh.scale:
-            return None
-        return self._grown(self._problem(0.0), True, ())
+    def piece(self) -> Piece:
+        """The reduced problem."""
+        problem = self._problem()
+        say = self.say
+        seen = 0
 
-    @cached_property
-    def held(self) -> Piece | None:
-        """The reduced problem where the walls that vary do not slip."""
-        basis = self._basis_held
-        return None if basis is None else self._finished(basis, True)
+        def take(snapshot: Snapshot) -> None:
+            nonlocal seen
+            if seen < _CHECKED:
+                self.shares.append(shares_of(problem, snapshot))
+            seen += 1
+            say(f"making a reduced model: {seen} full solves")
 
-    @cached_property
-    def slipping(self) -> Piece | None:
-        """The reduced problem where they do; its basis starts from the flows without slip."""
-        if not self._slippery or self.ranges.slip_length[1] < HELD * self.mesh.scale:
-            return None
-        problem = self._problem(1.0)
-        seeds: tuple[np.ndarray, ...] = ()
-        if self._basis_held is not None:
-            held = self._basis_held
-            there, here = held.problem.blocks.space, problem.blocks.space
-            seeds = (here.prolongation.T @ (there.prolongation @ held.vectors),)
-            self._holding = held.vectors.shape[1]
-        return self._finished(self._grown(problem, False, seeds), False)
+        def tell(worst: float) -> None:
+            say(
+                f"making a reduced model: {seen} full solves, error {worst:.1g}, "
+                f"wanted {self.tolerance:g}"
+            )
+
+        grown = grow(
+            problem,
+            self._grid,
+            self.judge,
+            _SOLVED * self.tolerance,
+            self.most,
+            np.random.default_rng(0),
+            take,
+            tell,
+        )
+        self.solves, self.worst = seen, grown.worst
+        self.unknowns = problem.blocks.space.unknowns
+        return compressed(
+            piece_of(grown.basis),
+            self._grid,
+            self.judge,
+            _LEFT * self.tolerance,
+            self._traces(grown.basis),
+            grown.basis.balance,
+        )
 
     @cached_property
     def largest(self) -> np.ndarray:
         """Largest magnitude (K,) of every judged reading over the ranges; see Judge.largest."""
-        found = []
-        for piece, held in ((self.held, True), (self.slipping, False)):
-            if piece is not None:
-                batch = piece.answer(self._grid(held))
-                values, _, scale = self.judge.resistances(batch)
-                found.append(self.judge.largest(values, scale))
-        return np.asarray(np.max(found, axis=0))
+        values, _, scale = self.judge.resistances(self.piece.answer(self._grid))
+        return self.judge.largest(values, scale)
 
-    def _grid(self, held: bool) -> np.ndarray:
-        return self.ranges.grid(self.mesh.scale, held, self._series)
+    @cached_property
+    def _grid(self) -> np.ndarray:
+        return self.ranges.grid(self.mesh.scale, self._slips, self._series)
 
     @property
     def _series(self) -> bool:
         return any(contact.resistance for contact in self.parts.device.contacts)
 
-    def _problem(self, slip_length: float) -> Problem:
-        varied = parts_at(self.parts, Point(1.0, 1.0, slip_length), self.ranges.walls).device
-        mesh = replace(self.mesh, device=varied)
-        blocks = assemble(FlowSpace(mesh, self.degree), self.parts.fluid.ratios)
-        self.unknowns = max(self.unknowns, blocks.space.unknowns)
+    def _problem(self) -> Problem:
+        blocks = assemble(FlowSpace(self.mesh, self.degree), self.parts.fluid.ratios)
         wanted = {
-            term.WALL: slip_length > 0,
+            term.WALL: self._slips,
             term.SERIES: self._series,
             term.CHARGE: self.ranges.intrinsic_conductivity is not None,
             term.LORENTZ: self.ranges.cyclotron is not None,
@@ -132,50 +141,12 @@ class Making:
         terms = (term.FRICTION, term.VISCOUS, *(name for name in wanted if wanted[name]))
         return Problem(blocks, terms, self.ranges.walls, bulk_ratio(self.parts.fluid.coefficients))
 
-    def _grown(self, problem: Problem, held: bool, seeds: tuple[np.ndarray, ...]) -> Basis:
-        seen = 0
-
-        def take(snapshot: Snapshot) -> None:
-            nonlocal seen
-            if seen == 0:
-                self.shares.append(shares_of(problem, snapshot))
-            seen += 1
-            self.solves += 1
-            self._say(math.nan)
-
-        grown = grow(
-            problem,
-            self._grid(held),
-            self.judge,
-            _SOLVED * self.tolerance,
-            self.most,
-            np.random.default_rng(0),
-            seeds,
-            take,
-            self._say,
-        )
-        self.worst = max(self.worst, grown.worst)
-        return grown.basis
-
-    def _say(self, worst: float) -> None:
-        reached = f", error {worst:.1g} of {self.tolerance:g}" if worst > self.tolerance else ""
-        self.say(f"making a reduced model: {self.solves} full solves{reached}")
-
-    def _finished(self, basis: Basis, held: bool) -> Piece:
+    def _traces(self, basis: Basis) -> np.ndarray | None:
+        """(r, r) with TᵀT the wall term on a basis, or None without that term."""
         problem = basis.problem
-        traces: np.ndarray | None = None
-        if term.WALL in problem.terms:
-            walls = [wall for wall, _ in problem.blocks.walls if wall in problem.walls]
-            along = [wall_traces(problem.blocks, wall) @ basis.vectors for wall in walls]
-            traces = np.asarray(np.linalg.qr(np.concatenate(along), mode="r"))
-            traces = np.pad(traces, ((0, traces.shape[1] - len(traces)), (0, 0)))
-        grid = self._grid(held)
-        return compressed(
-            piece_of(basis),
-            grid,
-            self.judge,
-            _LEFT * self.tolerance,
-            traces,
-            self._holding if term.WALL in problem.terms else 0,
-            basis.balance,
-        )
+        if term.WALL not in problem.terms:
+            return None
+        walls = [wall for wall, _ in problem.blocks.walls if wall in problem.walls]
+        along = [wall_traces(problem.blocks, wall) @ basis.vectors for wall in walls]
+        found = np.asarray(np.linalg.qr(np.concatenate(along), mode="r"))
+        return np.pad(found, ((0, found.shape[1] - len(found)), (0, 0)))

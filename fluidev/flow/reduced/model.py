@@ -15,7 +15,7 @@ from fluidev.flow.reduced.answers import Answers, ReducedError
 from fluidev.flow.reduced.discretisation import Shares
 from fluidev.flow.reduced.judge import Judge, mean_resistance
 from fluidev.flow.reduced.piece import Batch, Piece
-from fluidev.flow.reduced.ranges import HELD, Ranges
+from fluidev.flow.reduced.ranges import Ranges
 from fluidev.flow.reduced.slopes import slopes_of, whole
 
 
@@ -23,10 +23,8 @@ from fluidev.flow.reduced.slopes import slopes_of, whole
 class ReducedModel:
     """Conductance matrices of one device over ranges of operating points.
 
-    held: the reduced problem with no slip; slipping: with some. Each may be None where its points
-    are not in the ranges, or slip makes no difference. judge, largest: the readings that the model
-    was made for, and the largest magnitude (K,) of each over the mean two-terminal resistance at
-    the same point. tolerance: what their errors due to the reduction were to stay below, over that.
+    piece: the reduced problem. judge, largest: the readings that the model was made for, and the
+    largest magnitude (K,) of each over the mean two-terminal resistance at the same point. tolerance: what their errors due to the reduction were to stay below, over that.
     identity: hash of all that the model depends on. facts: how it was made (numbers of full solves,
     modes, elements and unknowns, and seconds).
     """
@@ -34,8 +32,7 @@ class ReducedModel:
     parts: Parts = field(repr=False)
     ranges: Ranges
     identity: str
-    held: Piece | None
-    slipping: Piece | None
+    piece: Piece
     judge: Judge = field(repr=False)
     largest: np.ndarray = field(repr=False)
     tolerance: float
@@ -75,10 +72,8 @@ class ReducedModel:
         table = point_table([point])
         if not self.trusted(table).all():
             return self.full.derivatives(point)
-        held = bool(self._held(table)[0])
-        piece = self._piece(held)
         rho = self.parts.fluid.coefficients.charge_density
-        return slopes_of(piece, table[0], self.ranges.walls, rho, point.slip_length == 0.0)
+        return slopes_of(self.piece, table[0], self.ranges.walls, rho)
 
     def trusted(self, table: np.ndarray) -> np.ndarray:
         """Whether the reduced model answers at points (m, 6) within its tolerance, (m,)."""
@@ -102,24 +97,14 @@ class ReducedModel:
         return self._answered(table)[0]
 
     def _answered(self, table: np.ndarray) -> tuple[Answers, Batch]:
-        held = self._held(table)
-        count = len(self.contacts) - 1
-        conductance, left, right = (np.zeros((len(table), count, count)) for _ in range(3))
-        for holding in (True, False):
-            who = np.flatnonzero(held == holding)
-            if not len(who):
-                continue
-            found = self._piece(holding).answer(table[who])
-            conductance[who], left[who], right[who] = found.conductance, found.left, found.right
-        none = np.zeros((len(table), 0, 0))
-        batch = Batch(conductance, left, right, none, none)
+        batch = self.piece.answer(table)
         sheet = table[:, COLUMNS.index("sheet_resistance")]
         answers = Answers(
             self.contacts,
-            whole(conductance / sheet[:, None, None]),
-            left / sheet[:, None, None],
-            right / sheet[:, None, None],
-            mean_resistance(np.linalg.inv(conductance)) * sheet,
+            whole(batch.conductance / sheet[:, None, None]),
+            batch.left / sheet[:, None, None],
+            batch.right / sheet[:, None, None],
+            mean_resistance(np.linalg.inv(batch.conductance)) * sheet,
             self.shares,
         )
         return answers, batch
@@ -128,15 +113,3 @@ class ReducedModel:
         _, bound, scale = self.judge.resistances(batch)
         allowed = self.tolerance * scale[:, None] * self.largest
         return np.asarray((bound <= allowed).all(axis=1))
-
-    def _held(self, table: np.ndarray) -> np.ndarray:
-        """Which points (m, 6) are answered as having no slip."""
-        if self.slipping is None:
-            return np.ones(len(table), dtype=bool)
-        slip = table[:, COLUMNS.index("slip_length")]
-        return np.asarray((slip < HELD * self.slipping.length) & (self.held is not None))
-
-    def _piece(self, held: bool) -> Piece:
-        piece = self.held if held else self.slipping
-        assert piece is not None
-        return piece

@@ -15,6 +15,7 @@ from fluidev.flow.factor import Factor, factorise
 from fluidev.flow.reduced import terms as term
 from fluidev.flow.reduced.loaded import solve_loaded
 from fluidev.flow.reduced.noise import random_loads
+from fluidev.flow.reduced.ranges import LEAST_SLIP
 from fluidev.flow.system import Solution, condense
 from fluidev.flow.weights import Weights
 
@@ -44,8 +45,8 @@ class Snapshot:
 class Problem:
     """The blocks of a device on one mesh, seen as a sum of terms.
 
-    terms: names as in reduced.terms. walls: the kinds of wall whose slip length varies; they slip
-    in the blocks where WALL is among the terms and hold the fluid where it is not.
+    terms: names as in reduced.terms. walls: the kinds of wall whose slip length varies, if WALL is
+    among the terms.
     bulk_ratio: ζ/η.
     """
 
@@ -148,7 +149,9 @@ class Problem:
         # Any unit would do; this one keeps the system's numbers near one.
         unit = max(1.0, 10.0 * viscous)
         slips = (
-            at["slip_length"] if index in self.walls else wall.slip_length
+            max(at["slip_length"], LEAST_SLIP * self.length)
+            if index in self.walls and term.WALL in self.terms
+            else wall.slip_length
             for index, wall in enumerate(device.walls)
         )
         series = self.length * at["sheet_resistance"] * unit

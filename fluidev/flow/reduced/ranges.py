@@ -9,9 +9,9 @@ import numpy as np
 
 from fluidev.flow.answer import COLUMNS
 
-# A slip length below this part of the device is answered as none: the drag of a wall goes on
-# changing, relatively, by a few times slip length over width.
-HELD = 1e-8
+# No slip is answered as a slip length of this part of the device: what that changes of a
+# resistance is a few times slip length over width.
+LEAST_SLIP = 1e-9
 # Points of the training grid along each quantity, and about how many in all.
 _POINTS = {
     "gurzhi_length": 24,
@@ -76,17 +76,16 @@ class Ranges:
             found &= (column >= ends[0] - slack[0]) & (column <= ends[1] + slack[1])
         return found
 
-    def grid(self, length: float, held: bool, series: bool) -> np.ndarray:
+    def grid(self, length: float, slips: bool, series: bool) -> np.ndarray:
         """Training points (m, 6): a tensor grid, even in the logarithm of what is positive.
 
-        length: the mesh length in m. held: with no slip, else with every slip length that counts
-        as some. series: whether contacts are resistive, so that the sheet resistance matters; with
+        length: the mesh length in m. slips: whether the slip length matters. series: whether contacts are resistive, so that the sheet resistance matters; with
         σ_Q it does so by σ_Q R alone, and R is 1 Ω here.
         """
         axes: dict[str, tuple[float, float]] = {}
         for name in COLUMNS:
             ends = getattr(self, name)
-            left_out = (name == "slip_length" and held) or (
+            left_out = (name == "slip_length" and not slips) or (
                 name == "sheet_resistance" and not series
             )
             if ends is not None and not left_out:
@@ -119,9 +118,9 @@ class Ranges:
         low, high = self.slip_length
         # Above this a wall is as good as perfectly slippery.
         top = 100.0 * length * max(1.0, (self.gurzhi_length[1] / length) ** 2)
-        low, finite = max(low, HELD * length), min(high, top)
+        low, finite = max(low, LEAST_SLIP * length), min(high, top)
         if low >= finite:
-            return np.unique([low, high])
+            return np.unique([low, max(low, high)])
         found = np.geomspace(low, finite, max(count - 1, 2))
         return np.append(found, high) if high > top else found
 

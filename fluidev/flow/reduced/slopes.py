@@ -15,7 +15,6 @@ def slopes_of(
     row: np.ndarray,
     walls: tuple[int, ...],
     charge_density: float,
-    held: bool,
 ) -> Derivatives:
     """dG/dp at one point (6,), exact for the reduced model and so in error like its matrices.
 
@@ -53,7 +52,7 @@ def slopes_of(
     names = [f"slip_length.{wall_name(walls[0])}"] if len(walls) == 1 else ["slip_length"]
     for name in names:
         values[name] = slip
-        found[name] = np.nan * none if held else -along(term.WALL) / slip
+        found[name] = np.nan * none if slip == 0.0 else -along(term.WALL) / slip
     if term.LORENTZ in by:
         values["magnetic_field"] = at["cyclotron"] * charge_density * sheet
         found["magnetic_field"] = by[term.LORENTZ] / (charge_density * sheet)

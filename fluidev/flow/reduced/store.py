@@ -20,7 +20,6 @@ from fluidev.flow.reduced.model import ReducedModel
 from fluidev.flow.reduced.piece import Piece
 from fluidev.flow.reduced.ranges import Ranges
 
-_PIECES = ("held", "slipping")
 _ARRAYS = ("blocks", "loads", "base", "references", "measured", "probe_loads")
 
 
@@ -33,6 +32,8 @@ def save(model: ReducedModel, file: str | os.PathLike[str]) -> None:
         "ranges": asdict(model.ranges),
         "tolerance": model.tolerance,
         "shares": len(model.shares),
+        "terms": model.piece.terms,
+        "length": model.piece.length,
         "faintest": model.judge.faintest,
         "facts": dict(model.facts),
     }
@@ -41,11 +42,7 @@ def save(model: ReducedModel, file: str | os.PathLike[str]) -> None:
         "voltage": model.judge.voltage,
         "largest": model.largest,
     }
-    for name in _PIECES:
-        piece: Piece | None = getattr(model, name)
-        if piece is not None:
-            about[name] = {"terms": piece.terms, "length": piece.length}
-            arrays |= {f"{name}.{part}": getattr(piece, part) for part in _ARRAYS}
+    arrays |= {f"piece.{name}": getattr(model.piece, name) for name in _ARRAYS}
     for index, shares in enumerate(model.shares):
         arrays |= {f"shares.{index}.{name}": part for name, part in vars(shares).items()}
     partial = path.with_name(path.name + ".part")
@@ -80,13 +77,15 @@ def load(file: str | os.PathLike[str], parts: Parts) -> ReducedModel:
                 f"{os.fspath(file)}: this reduced model was made for another device or fluid, or by "
                 "another version of the program; build it anew"
             )
-        pieces = {name: _piece(about.get(name), name, held) for name in _PIECES}
         return ReducedModel(
             parts=parts,
             ranges=ranges,
             identity=identity,
-            held=pieces["held"],
-            slipping=pieces["slipping"],
+            piece=Piece(
+                terms=tuple(about["terms"]),
+                length=float(about["length"]),
+                **{name: held[f"piece.{name}"] for name in _ARRAYS},
+            ),
             judge=Judge(held["current"], held["voltage"], float(about["faintest"])),
             largest=held["largest"],
             tolerance=float(about["tolerance"]),
@@ -98,11 +97,3 @@ def load(file: str | os.PathLike[str], parts: Parts) -> ReducedModel:
         )
     except (KeyError, TypeError) as error:
         raise NumericsError(f"{os.fspath(file)}: holds no reduced model ({error!r})") from None
-
-
-def _piece(about: dict[str, Any] | None, name: str, held: dict[str, np.ndarray]) -> Piece | None:
-    if about is None:
-        return None
-    arrays = {part: held[f"{name}.{part}"] for part in _ARRAYS}
-    assert {f.name for f in fields(Piece)} == {"terms", "length", *_ARRAYS}
-    return Piece(terms=tuple(about["terms"]), length=float(about["length"]), **arrays)

@@ -17,6 +17,7 @@ from __future__ import annotations
 import numpy as np
 
 from fluidev.flow.answer import COLUMNS
+from fluidev.flow.reduced.ranges import LEAST_SLIP
 
 FRICTION, VISCOUS, WALL, SERIES, CHARGE = "friction", "viscous", "wall", "series", "charge"
 LORENTZ, HALL = "lorentz", "hall"
@@ -24,7 +25,10 @@ SKEW = (LORENTZ, HALL)
 
 
 def term_weights(terms: tuple[str, ...], table: np.ndarray, length: float) -> np.ndarray:
-    """Weights (m, T) of the terms at points (m, 6); length: the mesh length in m."""
+    """Weights (m, T) of the terms at points (m, 6); length: the mesh length in m.
+
+    No slip counts as the least slip length of reduced.ranges.
+    """
     at = dict(zip(COLUMNS, np.asarray(table, dtype=float).T, strict=True))
     gurzhi, sheet = at["gurzhi_length"], at["sheet_resistance"]
     viscous = (gurzhi / length) ** 2
@@ -32,7 +36,7 @@ def term_weights(terms: tuple[str, ...], table: np.ndarray, length: float) -> np
         found = {
             FRICTION: np.ones_like(viscous),
             VISCOUS: viscous,
-            WALL: viscous * (length / at["slip_length"]),
+            WALL: viscous / np.maximum(at["slip_length"] / length, LEAST_SLIP),
             SERIES: 1.0 / sheet,
             CHARGE: 1.0 / (at["intrinsic_conductivity"] * sheet),
             LORENTZ: at["cyclotron"],
