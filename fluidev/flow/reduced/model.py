@@ -103,7 +103,7 @@ class ReducedModel:
             self.contacts,
             whole(batch.conductance / sheet[:, None, None]),
             batch.left / sheet[:, None, None],
-            batch.right / sheet[:, None, None],
+            None if batch.right is None else batch.right / sheet[:, None, None],
             mean_resistance(np.linalg.inv(batch.conductance)) * sheet,
             self.shares,
         )

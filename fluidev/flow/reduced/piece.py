@@ -28,13 +28,13 @@ class Batch:
     """What a piece says of m points, in units of the sheet resistance.
 
     conductance: (m, N − 1, N − 1) of the first N − 1 contacts, the last at 0 V. left, right:
-    (m, N − 1, N − 1) positive: |aᵀ ΔG b|² ≤ (aᵀ left a)(bᵀ right b) for potentials a, b; the same
-    array without a field. flows: (m, r, N − 1) coefficients.
+    (m, N − 1, N − 1) positive: |aᵀ ΔG b|² ≤ (aᵀ left a)(bᵀ right b) for potentials a, b; right is
+    None where it is the same, without a field. flows: (m, r, N − 1) coefficients.
     """
 
     conductance: np.ndarray
     left: np.ndarray
-    right: np.ndarray
+    right: np.ndarray | None
     flows: np.ndarray = field(repr=False)
     adjoints: np.ndarray = field(repr=False)
 
@@ -77,11 +77,11 @@ class Piece:
         adjoints = self._flows(weights, self.loads, True) if self.skew else flows
         if not errors:
             none = np.zeros((len(table), 0, 0))
-            return Batch(conductance, none, none, flows, adjoints)
+            return Batch(conductance, none, None, flows, adjoints)
         # The full solve is rounded as well, and the energy of its error with it.
         floor = _ROUNDING * 0.5 * (conductance + conductance.transpose(0, 2, 1))
-        right = self._energy(weights, flows, False) + floor
-        left = self._energy(weights, adjoints, True) + floor if self.skew else right
+        left = self._energy(weights, adjoints, self.skew) + floor
+        right = self._energy(weights, flows, False) + floor if self.skew else None
         return Batch(conductance, left, right, flows, adjoints)
 
     def _flows(self, weights: np.ndarray, loads: np.ndarray, transposed: bool) -> np.ndarray:

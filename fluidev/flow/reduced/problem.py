@@ -1,8 +1,8 @@
-"""The full problem that a reduced model is made from: its operator term by term, and its solves."""
+"""The full problem that a reduced model is made from: its operator, term by term."""
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field, replace
+from dataclasses import dataclass, field
 from functools import cached_property
 
 import numpy as np
@@ -10,35 +10,10 @@ import scipy.sparse as sp
 
 from fluidev.flow.answer import COLUMNS
 from fluidev.flow.blocks import Blocks
-from fluidev.flow.contacts import contact_form
 from fluidev.flow.factor import Factor, factorise
 from fluidev.flow.reduced import terms as term
-from fluidev.flow.reduced.loaded import solve_loaded
-from fluidev.flow.reduced.noise import random_loads
 from fluidev.flow.reduced.ranges import LEAST_SLIP
-from fluidev.flow.system import Solution, condense
 from fluidev.flow.weights import Weights
-
-# Vectors that the residual at a point is measured with: the energy of an error is known from them
-# within a factor of two or so.
-PROBES = 32
-
-
-@dataclass(frozen=True)
-class Snapshot:
-    """What one full solve gives a reduced model.
-
-    row: the point (6,). solution: the flows, in units of the sheet resistance. values: (nf, ·) the
-    velocities of N − 1 flows (and of those in the reversed field). slopes: (nf, ·) how they change
-    with the weight of each term. probes: (nf, PROBES), see reduced.noise.
-    """
-
-    row: np.ndarray
-    solution: Solution = field(repr=False)
-    weights: Weights = field(repr=False)
-    values: np.ndarray = field(repr=False)
-    slopes: np.ndarray = field(repr=False)
-    probes: np.ndarray = field(repr=False)
 
 
 @dataclass(frozen=True)
@@ -169,58 +144,6 @@ class Problem:
             contacts=tuple(contact.resistance / series for contact in device.contacts),
         )
 
-    def snapshot(self, row: np.ndarray, rng: np.random.Generator) -> Snapshot:
-        """The full solve at a point and what comes cheaply with its factors."""
-        blocks, weights = self.blocks, self.weights_at(row)
-        split, unit = blocks.velocities, weights.unit
-        forms = tuple(
-            contact_form(trace, weights, resistance)
-            for trace, resistance in zip(blocks.contacts, weights.contacts, strict=True)
-        )
-        system = condense(blocks, weights, forms)
-        driven = np.stack([form.load for form in forms], axis=1)
-        currents = np.stack([form.current for form in forms], axis=1)
-        states = [_completed(system.solve(driven[:, :-1]), split)]
-        conductance = closed(currents.T @ states[0]) / unit
-        if self.skew:
-            states.append(_completed(system.solve(currents[:, :-1], transposed=True), split))
-        values = [state[:split, :-1] / unit for state in states]
-        pushes = [
-            np.concatenate(
-                [
-                    self.applied(name, flow) * (-1.0 if transposed and name in term.SKEW else 1.0)
-                    for name in self.terms
-                    if name != term.FRICTION
-                ],
-                axis=1,
-            )
-            for transposed, flow in enumerate(values)
-        ]
-        # The system is A over the unit, so this noise has A for its covariance.
-        noise = random_loads(blocks, weights, PROBES, rng) * np.sqrt(unit)
-        loads = [np.pad(push, ((0, blocks.space.potentials), (0, 0))) for push in pushes]
-        if self.skew:
-            solved = [
-                solve_loaded(blocks, weights, system, load, bool(transposed))
-                for transposed, load in enumerate(loads)
-            ]
-            # A residual is measured with the symmetric part.
-            plain = replace(weights, field=0.0, hall=0.0)
-            solved.append(solve_loaded(blocks, plain, condense(blocks, plain, forms), noise))
-        else:
-            both = np.concatenate([loads[0], noise], axis=1)
-            solved = [solve_loaded(blocks, weights, system, both)]
-        gained = np.concatenate(solved, axis=1)[:split] / unit
-        solution = Solution(conductance, states[0], states[-1], forms)
-        return Snapshot(
-            row,
-            solution,
-            weights,
-            np.concatenate(values, axis=1),
-            gained[:, :-PROBES],
-            gained[:, -PROBES:] / np.sqrt(PROBES),
-        )
-
 
 def closed(matrix: np.ndarray) -> np.ndarray:
     """A square matrix with the diagonal that makes its columns sum to zero."""
@@ -228,10 +151,3 @@ def closed(matrix: np.ndarray) -> np.ndarray:
     np.fill_diagonal(found, 0.0)
     np.fill_diagonal(found, -found.sum(axis=0))
     return found
-
-
-def _completed(driven: np.ndarray, velocities: int) -> np.ndarray:
-    """N flows from the first N − 1: 1 V on every contact drives nothing."""
-    rest = -driven.sum(axis=1)
-    rest[velocities:] += 1.0
-    return np.column_stack([driven, rest])
