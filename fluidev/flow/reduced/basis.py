@@ -38,7 +38,7 @@ class Basis:
 
     def __post_init__(self) -> None:
         size, terms = self.problem.blocks.velocities, len(self.problem.terms)
-        self._room = np.empty((2, _ROOM, size))
+        self._room = [np.empty((size, _ROOM)) for _ in range(2)]
         self._count = 0
         matrices = self.problem.matrices
         self._product = sp.csr_array(self.balance * matrices[VISCOUS] + matrices[FRICTION])
@@ -89,20 +89,21 @@ class Basis:
     @property
     def vectors(self) -> np.ndarray:
         """The basis (nf, r)."""
-        return np.asarray(self._room[0, : self._count].T)
+        return self._room[0][:, : self._count]
 
     @property
     def _duals(self) -> np.ndarray:
         """The inner product's matrix times the basis (nf, r)."""
-        return np.asarray(self._room[1, : self._count].T)
+        return self._room[1][:, : self._count]
 
     def _store(self, vectors: np.ndarray, weighed: np.ndarray) -> None:
         total = self._count + vectors.shape[1]
-        if total > self._room.shape[1]:
-            more = np.empty((2, max(_ROOM, total), self._room.shape[2]))
-            self._room = np.concatenate([self._room, more], axis=1)
-        self._room[0, self._count : total] = vectors.T
-        self._room[1, self._count : total] = weighed.T
+        for index, fresh in enumerate((vectors, weighed)):
+            room = self._room[index]
+            if total > room.shape[1]:
+                self._room[index] = np.empty((len(room), total + _ROOM))
+                self._room[index][:, : self._count] = room[:, : self._count]
+            self._room[index][:, self._count : total] = fresh
         self._count = total
 
     def _projected(self, vectors: np.ndarray) -> np.ndarray:
