@@ -1,4 +1,4 @@
-"""Print the measurements: python -m benchmarks [accuracy work reduced growth cold bars]."""
+"""Print the measurements: python -m benchmarks [accuracy work growth cold bars]."""
 
 from __future__ import annotations
 
@@ -8,7 +8,6 @@ import sys
 TABLES = {
     "accuracy": ("benchmarks.accuracy", "from a case to readings at 1 % and 0.1 %, spur bar"),
     "work": ("benchmarks.same_work", "the same work on the same mesh"),
-    "reduced": ("benchmarks.reduced_points", "10,000 points of Gurzhi and slip length, spur bar"),
     "growth": ("benchmarks.growth", "growth with size"),
     "cold": ("benchmarks.cold", "cold start"),
     "bars": ("benchmarks.bars", "error bars over all shipped cases and three fluids each"),
